@@ -17,7 +17,8 @@ struct shape {
   double (*extent)(const part *p, double *origin); /* thickness across the section, m; origin: coordinate of
                                             front or bore surface; NAN if sizes are missing */
   bool (*hollow)(const part *p);         /* has an inner face */
-  status (*build)(struct mesh *m, const heat_case *c, const struct mesh_plan *plan, arena *memory, fault *f);
+  status (*build)(struct mesh *m, const heat_case *c, const struct mesh_plan *plan, const property *properties,
+                  arena *memory, fault *f); /* control volumes of the section */
   dimension energy, power_unit;          /* of heat_absorbed and heat_flow: J/m2, W/m2 | J/m, W/m | J, W */
 };
 
