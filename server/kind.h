@@ -8,7 +8,7 @@
 
 struct reader;
 
-typedef enum media { MEDIA_JSON, MEDIA_CSV } media;
+typedef enum media { MEDIA_JSON, MEDIA_CSV, MEDIA_TEXT } media; /* TEXT: for a reader, not for a program */
 
 typedef struct job_kind {
   const char *name; /* "solve": `kind` in a document */
