@@ -1,0 +1,180 @@
+/* write_text.c: the answer of a solve as lines that a person reads at a furnace: clock times as
+   h:mm:ss, durations in words, each requirement with what is to spare. */
+#include "write_parts.h"
+
+#include <math.h>
+#include <stdio.h>
+#include <string.h>
+
+enum { MINUTE = 60, HOUR = 3600 };
+
+static void write_clock(buffer *b, double seconds) {
+  long s = lround(seconds);
+  buffer_format(b, "%ld:%02ld:%02ld", s / HOUR, s % HOUR / MINUTE, s % MINUTE);
+}
+
+static void write_duration(buffer *b, double seconds) {
+  double size = fabs(seconds);
+  if (seconds < 0) buffer_text(b, "-");
+  if (size < 2 * MINUTE) {
+    json_number(b, round(size * 10) / 10, 0);
+    buffer_text(b, " s");
+  } else if (size < 2 * HOUR) {
+    long s = lround(size);
+    buffer_format(b, "%ld min", s / MINUTE);
+    if (s % MINUTE) buffer_format(b, " %ld s", s % MINUTE);
+  } else {
+    long minutes = lround(size / MINUTE);
+    buffer_format(b, "%ld h %02ld min", minutes / 60, minutes % 60);
+  }
+}
+
+/* A value with its unit; a time as a duration. */
+static void write_quantity(writing *w, double value, dimension d, double error) {
+  if (d == DIMENSION_TIME) {
+    write_duration(w->b, value);
+    return;
+  }
+  write_value(w, value, d, error);
+  buffer_format(w->b, " %s", quantity_label(d, w->units));
+}
+
+static void write_spread(writing *w, double value, dimension d, double error) {
+  if (d == DIMENSION_TIME) {
+    write_duration(w->b, value);
+    return;
+  }
+  write_difference(w, value, d, error);
+  const char *label =
+      quantity_label(d == DIMENSION_TEMPERATURE ? DIMENSION_DIFFERENCE : d, w->units);
+  buffer_format(w->b, " %s", label);
+}
+
+static const char *ending_words(stage_ended e) {
+  switch (e) {
+  case ENDED_LASTS: return "as scheduled";
+  case ENDED_UNTIL: return "condition reached";
+  case ENDED_TIME_LIMIT: return "stopped by its time limit";
+  case ENDED_STEADY: return "steady state";
+  }
+  return "";
+}
+
+static void write_stage_lines(writing *w) {
+  buffer_text(w->b, "\nStages\n");
+  for (int i = 0; i < w->r->stages; i++) {
+    const stage_result *s = &w->r->stage[i];
+    buffer_format(w->b, "  %-20s ", w->c->stages.items[i].name);
+    write_clock(w->b, s->start);
+    buffer_text(w->b, " to ");
+    write_clock(w->b, s->end);
+    buffer_format(w->b, ", %s", ending_words(s->ended_by));
+    if (s->ended_by == ENDED_UNTIL) {
+      buffer_text(w->b, " (± ");
+      write_duration(w->b, s->end_error);
+      buffer_text(w->b, ")");
+    }
+    buffer_text(w->b, "\n");
+  }
+}
+
+static void write_bound(writing *w, const char *words, double bound, dimension d) {
+  if (isnan(bound)) return;
+  buffer_text(w->b, words);
+  write_quantity(w, bound, d, INFINITY);
+}
+
+static void write_judgement(writing *w, const figure_result *f, const requirement *q) {
+  buffer_text(w->b, "; required");
+  write_bound(w, " at least ", q->at_least, f->dimension);
+  write_bound(w, " at most ", q->at_most, f->dimension);
+  buffer_text(w->b, f->met ? ": met" : ": NOT MET");
+  if (!isfinite(f->margin)) return;
+  buffer_text(w->b, f->met ? " with " : " by ");
+  write_spread(w, fabs(f->margin), f->dimension, f->error);
+  if (f->met) buffer_text(w->b, " to spare");
+  if (f->close) buffer_text(w->b, ", which is within the numerical error");
+}
+
+static void write_parts_of_figure(writing *w, const figure_result *f) {
+  for (int i = 0; i < f->value.parts; i++) {
+    buffer_format(w->b, "%s%s ", i ? ", " : "", f->value.part[i].name);
+    write_quantity(w, f->value.part[i].value, f->dimension, f->error);
+    if (isnan(f->value.part[i].when)) continue;
+    buffer_text(w->b, " at ");
+    write_clock(w->b, f->value.part[i].when);
+  }
+}
+
+static void write_figure_value(writing *w, const figure_result *f) {
+  if (f->value.parts > 0) {
+    write_parts_of_figure(w, f);
+    return;
+  }
+  write_quantity(w, f->value.value, f->dimension, f->error);
+  if (isfinite(f->error) && f->error > 0) {
+    buffer_text(w->b, " ± ");
+    write_spread(w, f->error, f->dimension, f->error);
+  }
+  if (!isnan(f->value.when)) {
+    buffer_text(w->b, " at ");
+    write_clock(w->b, f->value.when);
+  }
+}
+
+static void write_figure_lines(writing *w) {
+  if (w->r->figures == 0) return;
+  buffer_text(w->b, "\nFigures\n");
+  for (int i = 0; i < w->r->figures; i++) {
+    const figure *asked = &w->c->figures.items[i];
+    const figure_result *f = &w->r->figure[i];
+    buffer_format(w->b, "  %-20s %s: ", asked->name, asked->kind->name);
+    if (f->value.found)
+      write_figure_value(w, f);
+    else
+      buffer_format(w->b, "no value, %s", f->value.why ? f->value.why : "not reached");
+    if (f->required && asked->require) write_judgement(w, f, asked->require);
+    buffer_text(w->b, "\n");
+  }
+}
+
+static const char *verdict_words(verdict v) {
+  switch (v) {
+  case VERDICT_NONE: return "none: nothing was required";
+  case VERDICT_MEETS: return "MEETS: every requirement is met";
+  case VERDICT_CLOSE:
+    return "CLOSE: none is missed, but some are within their numerical error; ask for a smaller "
+           "one";
+  case VERDICT_MISSES: return "MISSES: at least one requirement is not met";
+  }
+  return "";
+}
+
+static void write_notes(writing *w) {
+  int noticed = w->d->warning_count, found = w->r->warnings;
+  if (noticed + found > 0) buffer_text(w->b, "\nWarnings\n");
+  for (int i = 0; i < noticed + found; i++) {
+    const warning *it = i < noticed ? &w->d->warnings[i] : &w->r->warning[i - noticed];
+    buffer_format(w->b, "  %s%s%s\n", it->at, it->at[0] ? ": " : "", it->is);
+  }
+  buffer_text(w->b, "\nCautions\n");
+  for (const char *const *s = cautions_of(w->c); *s; s++) buffer_format(w->b, "  %s\n", *s);
+}
+
+void write_result_text(const document *d, const heat_result *r, buffer *b) {
+  writing w;
+  writing_init(&w, d, r, b);
+  buffer_format(b, "%s\n", d->title ? d->title : "Untitled case");
+  for (int i = 0; i < d->label_count; i++)
+    buffer_format(b, "%s%s %s%s", i ? ", " : "", d->labels[i].name, d->labels[i].value,
+                  i + 1 == d->label_count ? "\n" : "");
+  write_stage_lines(&w);
+  write_figure_lines(&w);
+  buffer_format(b, "\nVerdict   %s\n", verdict_words(r->verdict));
+  if (isfinite(r->numerics.error_estimate)) {
+    buffer_text(b, "Numerical error of temperatures: ");
+    write_error(&w, r->numerics.error_estimate, DIMENSION_DIFFERENCE);
+    buffer_format(b, " %s\n", quantity_label(DIMENSION_DIFFERENCE, w.units));
+  }
+  write_notes(&w);
+}
