@@ -28,6 +28,9 @@ typedef struct job_kind {
   verdict (*verdict)(const void *answer);
   /* Estimated cost, for `check` and the limit per request. */
   status (*cost)(const document *d, solve_cost *cost, fault *f);
+  /* What can be said of the question before it runs, for `check`: fills list (LIMIT_WARNINGS), returns how many. NULL:
+     nothing. */
+  int (*advise)(const document *d, warning *list);
   void (*free_question)(void *question);
   void (*free_part)(void *part);
   void (*free_answer)(void *answer);
