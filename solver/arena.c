@@ -18,7 +18,9 @@ void arena_init(arena *a, size_t limit) {
   a->limit = limit;
 }
 
-static size_t rounded(size_t bytes) { return (bytes + ALIGNMENT - 1) & ~(size_t)(ALIGNMENT - 1); }
+static size_t rounded(size_t bytes) {
+  return (bytes + ALIGNMENT - 1) & ~(size_t)(ALIGNMENT - 1);
+}
 
 static struct arena_block *block_new(size_t size) {
   struct arena_block *block = malloc(sizeof *block + ALIGNMENT + size);

@@ -60,6 +60,9 @@ void face_at(const face_condition *c, double stage_start, double from, double to
 /* Flux for a surface temperature (K), from the state. */
 face_flux face_exchange(const face_condition *c, const face_state *state, double surface_temperature);
 
+/* The condition with every series at its last value (a sine or fire curve: its value at t = 0): a steady stage. */
+face_condition face_at_rest(const face_condition *c);
+
 /* First break after stage time t among all series of the condition; longest step they allow. */
 double face_next_break(const face_condition *c, double stage_start, double t);
 double face_longest_step(const face_condition *c);

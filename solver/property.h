@@ -84,8 +84,11 @@ double property_temperature(const property *p, double enthalpy, double *slope);
 /* Kirchhoff potential (W/m), and dtheta/dH. */
 double property_potential(const property *p, double enthalpy, double *slope);
 
-/* Both at once, for the marching path: out = {theta, dtheta/dH, T, dT/dH}. */
-void property_look_up(const property *p, double enthalpy, double out[4]);
+/* theta and dtheta/dH of many enthalpies at once, for the marching path. slope may be NULL. */
+void property_potentials(const property *p, int count, const double *enthalpy, double *potential, double *slope);
+
+/* T of many enthalpies at once. */
+void property_temperatures(const property *p, int count, const double *enthalpy, double *temperature);
 
 /* H (J/m3, from the table's own zero) at T; at a latent heat of one temperature the liquid side. */
 double property_enthalpy(const property *p, double temperature);

@@ -1,6 +1,8 @@
 /* shape.c: the table of shapes. */
 #include "shape.h"
 
+#include "mesh.h"
+
 #include <math.h>
 #include <string.h>
 
@@ -55,10 +57,15 @@ static bool plate_hollow(const part *p) {
   return true;
 }
 
-static bool round_hollow(const part *p) { return bore_of(p) > 0; }
+static bool round_hollow(const part *p) {
+  return bore_of(p) > 0;
+}
 
 #define SIZES(array, name_, about_)                                                                \
-  { .name = name_, .about = about_, .size = sizeof(part), .parameters = array, .count = COUNT_OF(array) }
+  {                                                                                                \
+    .name = name_, .about = about_, .size = sizeof(part), .parameters = array,                     \
+    .count = COUNT_OF(array)                                                                       \
+  }
 
 static const shape plate = {
     .name = "plate",
@@ -70,6 +77,7 @@ static const shape plate = {
     .sizes = SIZES(plate_sizes, "plate", "Sizes of a plate"),
     .extent = plate_extent,
     .hollow = plate_hollow,
+    .build = mesh_build,
     .energy = DIMENSION_ENERGY_PER_AREA,
     .power_unit = DIMENSION_FLUX,
 };
@@ -84,6 +92,7 @@ static const shape cylinder = {
     .sizes = SIZES(cylinder_sizes, "cylinder", "Sizes of a long cylinder"),
     .extent = round_extent,
     .hollow = round_hollow,
+    .build = mesh_build,
     .energy = DIMENSION_ENERGY_PER_LENGTH,
     .power_unit = DIMENSION_POWER_PER_LENGTH,
 };
@@ -98,6 +107,7 @@ static const shape sphere = {
     .sizes = SIZES(sphere_sizes, "sphere", "Sizes of a sphere"),
     .extent = round_extent,
     .hollow = round_hollow,
+    .build = mesh_build,
     .energy = DIMENSION_ENERGY,
     .power_unit = DIMENSION_POWER,
 };

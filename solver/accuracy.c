@@ -1,0 +1,216 @@
+/* accuracy.c: fine and coarse, and finer until the difference is small enough. */
+#include "accuracy.h"
+
+#include "shape.h"
+
+#include <math.h>
+#include <stdlib.h>
+#include <string.h>
+
+#define COARSE_TOLERANCE 8.0   /* of the coarse twin's steps over the fine run's */
+#define MOST_WORK        1.2e8 /* nodes x steps of one run: some ten seconds on one core */
+#define TABLE_INTERVALS  512
+
+enum { MOST_REFINEMENTS = 9, MOST_WIDENINGS = 8 };
+
+status properties_build(const heat_case *c, double from, double to, property **out, arena *memory,
+                        fault *f) {
+  property *p = arena_array(memory, (size_t)c->materials.count + 1, sizeof *p);
+  if (!p) return fail(f, STATUS_NO_MEMORY, "", "out of memory");
+  for (int i = 0; i < c->materials.count; i++) {
+    status bad =
+        property_build(&p[i], &c->materials.items[i], from, to, TABLE_INTERVALS, memory, f);
+    if (bad) return bad;
+  }
+  *out = p;
+  return STATUS_OK;
+}
+
+/* ---- one march ---- */
+
+status attempt_new(attempt **out, const heat_case *c, const march_plan *plan,
+                   const property *properties, int keep_every, const observer *reference,
+                   fault *f) {
+  attempt *t = calloc(1, sizeof *t);
+  if (!t) return fail(f, STATUS_NO_MEMORY, "", "out of memory");
+  arena_init(&t->memory, 0);
+  mesh_plan mesh = {.cells = plan->cells,
+                    .keep_every = keep_every,
+                    .end_cell = plan->end_cell,
+                    .halved = plan->halved};
+  status bad = c->part.shape->build(&t->mesh, c, &mesh, properties, &t->memory, f);
+  if (!bad && conduction_init(&t->system, &t->mesh, &t->memory))
+    bad = fail(f, STATUS_NO_MEMORY, "", "out of memory");
+  if (!bad && stepper_init(&t->stepper, &t->system, &t->memory))
+    bad = fail(f, STATUS_NO_MEMORY, "", "out of memory");
+  if (!bad) bad = observe_init(&t->observer, c, &t->mesh, reference, &t->memory, f);
+  if (bad) {
+    attempt_free(t);
+    return bad;
+  }
+  *out = t;
+  return STATUS_OK;
+}
+
+status attempt_run(attempt *t, double tolerance, const double *durations,
+                   const solve_control *control, double progress_from, double progress_to,
+                   fault *f) {
+  march_request r = {.the_case = t->observer.the_case,
+                     .tolerance = tolerance,
+                     .durations = durations,
+                     .watch = &t->observer.march,
+                     .control = control,
+                     .progress_from = progress_from,
+                     .progress_to = progress_to};
+  return march(&r, &t->stepper, &t->outcome, f);
+}
+
+void attempt_free(attempt *t) {
+  if (!t) return;
+  arena_free(&t->memory);
+  free(t);
+}
+
+/* ---- two ---- */
+
+static void drop_attempts(accuracy *a) {
+  attempt_free(a->coarse);
+  attempt_free(a->fine);
+  a->fine = a->coarse = NULL;
+}
+
+static bool any_below_zero(const observer *o) {
+  for (int i = 0; i < o->mesh->layers; i++)
+    if (o->least[i] < 0) return true;
+  return false;
+}
+
+static status run_pair(accuracy *a, int refinement, fault *f) {
+  double from = 1 - 1.0 / (1 << refinement), to = 1 - 0.5 / (1 << refinement);
+  double split = from + 0.7 * (to - from), durations[LIMIT_STAGES];
+  drop_attempts(a);
+  status bad = attempt_new(&a->fine, a->the_case, &a->plan, a->properties, 1, NULL, f);
+  if (!bad) bad = attempt_run(a->fine, a->plan.tolerance, NULL, a->control, from, split, f);
+  if (bad) return bad;
+  a->runs++;
+  if (a->fine->observer.beyond_table) return STATUS_OK;
+  for (int i = 0; i < a->the_case->stages.count; i++)
+    durations[i] = a->fine->outcome.stage[i].end - a->fine->outcome.stage[i].start;
+  bad = attempt_new(&a->coarse, a->the_case, &a->plan, a->properties, 2, &a->fine->observer, f);
+  if (!bad)
+    bad = attempt_run(a->coarse, fmin(1, COARSE_TOLERANCE * a->plan.tolerance), durations,
+                      a->control, split, to, f);
+  a->runs += !bad;
+  return bad;
+}
+
+/* A case with flux or generation can leave the range that its starts and surroundings span. */
+static bool widen_tables(accuracy *a, status *bad, fault *f) {
+  const observer *o = &a->fine->observer;
+  double least = a->from, most = a->to;
+  for (int i = 0; i < o->mesh->layers; i++) {
+    least = fmin(least, o->least[i]);
+    most = fmax(most, o->most[i]);
+  }
+  double span = most - least;
+  if (least < a->from) least -= 0.5 * span;
+  if (most > a->to) most += 0.5 * span;
+  a->from = fmax(0, least);
+  a->to = fmin(most, 2e5);
+  arena_rewind(&a->memory);
+  *bad = properties_build(a->the_case, a->from, a->to, &a->properties, &a->memory, f);
+  return !*bad;
+}
+
+double accuracy_figure_error(const accuracy *a, int figure, const figure_value *fine,
+                             const figure_value *coarse) {
+  if (!fine->found) return NAN;
+  (void)figure;
+  double by_place = fine->sensitivity * a->estimate;
+  if (!coarse->found) return fine->sensitivity > 0 ? by_place : INFINITY;
+  double error = fabs(fine->value - coarse->value);
+  for (int i = 0; i < fine->parts && i < coarse->parts; i++)
+    error = fmax(error, fabs(fine->part[i].value - coarse->part[i].value));
+  return error;
+}
+
+/* Largest error of the figures that are temperatures. */
+static double figures_in_kelvin(const accuracy *a) {
+  double most = 0;
+  const heat_case *c = a->the_case;
+  for (int i = 0; i < c->figures.count; i++) {
+    const figure *g = &c->figures.items[i];
+    dimension d = g->kind->dimension(g, c);
+    if (d != DIMENSION_TEMPERATURE && d != DIMENSION_DIFFERENCE) continue;
+    figure_value fine = {0}, coarse = {0};
+    g->kind->finish(&a->fine->observer.run[i], &fine);
+    g->kind->finish(&a->coarse->observer.run[i], &coarse);
+    if (fine.found && coarse.found) most = fmax(most, fabs(fine.value - coarse.value));
+  }
+  return most;
+}
+
+static bool refine(accuracy *a, double ratio) {
+  double work = (double)a->fine->stepper.nodes * a->fine->outcome.steps;
+  double factor = fmin(4, fmax(1.3, sqrt(1.3 * ratio)));
+  int cells = plan_rung(a->plan.cells * factor);
+  if (cells == a->plan.cells || work * factor * factor > MOST_WORK) return false;
+  a->plan.tolerance /= fmin(8, fmax(1.6, 1.3 * ratio));
+  a->plan.cells = cells;
+  plan_end_cells(&a->plan, a->the_case, a->properties);
+  return true;
+}
+
+static status not_met(accuracy *a, double best, fault *f) {
+  fail(f, STATUS_ERROR_NOT_MET, "/numerical_error",
+       "%.3g K cannot be met within the limits of nodes and steps; %.2g K could be",
+       a->the_case->numerical_error, best * 1.05);
+  if (f) f->could_be_met = best * 1.05;
+  return STATUS_ERROR_NOT_MET;
+}
+
+static status run_until_met(accuracy *a, fault *f) {
+  double best = INFINITY;
+  for (int k = 0, widened = 0; k < MOST_REFINEMENTS; k++) {
+    status bad = run_pair(a, k, f);
+    if (bad == STATUS_BEYOND_LIMIT && isfinite(best)) return not_met(a, best, f);
+    if (bad) return bad;
+    if (a->fine->observer.out_of_memory)
+      return fail(f, STATUS_BEYOND_LIMIT, "", "too many places are watched");
+    if (a->fine->observer.beyond_table && any_below_zero(&a->fine->observer) && a->from <= 0)
+      return fail(
+          f, STATUS_NOT_FINITE, "/stages",
+          "more heat is taken out than the part holds: its temperature falls below absolute zero");
+    if (a->fine->observer.beyond_table && widened++ < MOST_WIDENINGS) {
+      if (!widen_tables(a, &bad, f)) return bad;
+      k--;
+      continue;
+    }
+    if (!a->coarse)
+      return fail(f, STATUS_NOT_FINITE, "/stages",
+                  "a temperature runs away; look at heat_generation and flux");
+    a->estimate = observe_difference(&a->fine->observer, &a->coarse->observer);
+    double worst = fmax(a->estimate, figures_in_kelvin(a));
+    if (worst <= a->the_case->numerical_error) return STATUS_OK;
+    best = fmin(best, worst);
+    if (!refine(a, worst / a->the_case->numerical_error)) break;
+  }
+  return not_met(a, best, f);
+}
+
+status accuracy_run(accuracy *a, const heat_case *c, const solve_control *control, fault *f) {
+  memset(a, 0, sizeof *a);
+  arena_init(&a->memory, 0);
+  a->the_case = c;
+  a->control = control;
+  plan_range(c, &a->from, &a->to);
+  status bad = properties_build(c, a->from, a->to, &a->properties, &a->memory, f);
+  if (bad) return bad;
+  plan_first(&a->plan, c, a->properties);
+  return run_until_met(a, f);
+}
+
+void accuracy_free(accuracy *a) {
+  drop_attempts(a);
+  arena_free(&a->memory);
+}
