@@ -10,15 +10,15 @@
 
 static void write_amount(buffer *b, const char *key, double value) {
   buffer_format(b, ", \"%s\": ", key);
-  json_number(b, value, INFINITY);
+  json_out_number(b, value, INFINITY);
 }
 
 static void write_notes(buffer *b, const warning *list, int count, bool *first) {
   for (int i = 0; i < count; i++) {
     buffer_text(b, *first ? "{\"at\": " : ", {\"at\": ");
-    json_string(b, list[i].at);
+    json_out_string(b, list[i].at);
     buffer_text(b, ", \"is\": ");
-    json_string(b, list[i].is);
+    json_out_string(b, list[i].is);
     buffer_text(b, "}");
     fprintf(stderr, "warning: %s%s%s\n", list[i].at, list[i].at[0] ? ": " : "", list[i].is);
     *first = false;

@@ -117,7 +117,7 @@ static void add_rounded(buffer *b, double value, int exponent, int decimals, boo
   add_exactly(b, value, decimals + exponent + 1);
 }
 
-bool json_number(buffer *b, double value, double error) {
+bool json_out_number(buffer *b, double value, double error) {
   if (!isfinite(value)) {
     b->failed = true;
     return false;
@@ -132,8 +132,8 @@ bool json_number(buffer *b, double value, double error) {
   return !b->failed;
 }
 
-bool json_error(buffer *b, double error) {
-  if (!isfinite(error)) return json_number(b, error, 0);
+bool json_out_error(buffer *b, double error) {
+  if (!isfinite(error)) return json_out_number(b, error, 0);
   char text[NUMBER_BYTES];
   snprintf(text, sizeof text, "%.*e", ERROR_DIGITS - 1, fabs(error));
   double rounded = strtod(text, NULL);
@@ -141,7 +141,7 @@ bool json_error(buffer *b, double error) {
     snprintf(text, sizeof text, "1e%d", atoi(strchr(text, 'e') + 1) - (ERROR_DIGITS - 1));
     rounded += strtod(text, NULL);
   }
-  return json_number(b, isfinite(rounded) ? rounded : error, INFINITY);
+  return json_out_number(b, isfinite(rounded) ? rounded : error, INFINITY);
 }
 
 /* Bytes of the UTF-8 sequence at c, 0 if it is none (RFC 3629). */
@@ -168,7 +168,7 @@ static void escaped(buffer *b, unsigned char c) {
   }
 }
 
-void json_string(buffer *b, const char *text) {
+void json_out_string(buffer *b, const char *text) {
   const unsigned char *c = (const unsigned char *)text, *plain = c;
   buffer_add(b, "\"", 1);
   while (*c) {

@@ -115,18 +115,18 @@ static problem_row row_of_failure(status s) {
 
 static void open_document(buffer *b, const problem_row *row, int http_status, const char *detail) {
   buffer_format(b, "{\"type\": \"/problems/%s\", \"title\": ", row->slug);
-  json_string(b, row->title);
+  json_out_string(b, row->title);
   buffer_format(b, ", \"status\": %d", http_status);
   if (detail) {
     buffer_text(b, ", \"detail\": ");
-    json_string(b, detail);
+    json_out_string(b, detail);
   }
 }
 
 static void write_member(buffer *b, const char *name, const char *text) {
   if (!text) return;
   buffer_format(b, ", \"%s\": ", name);
-  json_string(b, text);
+  json_out_string(b, text);
 }
 
 static void write_faults(buffer *b, const fault_list *faults) {
@@ -134,7 +134,7 @@ static void write_faults(buffer *b, const fault_list *faults) {
   for (int i = 0; i < faults->count; i++) {
     const request_fault *f = &faults->items[i];
     buffer_text(b, i ? ", {\"at\": " : "{\"at\": ");
-    json_string(b, f->at ? f->at : "");
+    json_out_string(b, f->at ? f->at : "");
     write_member(b, "is", f->is ? f->is : "");
     write_member(b, "got", f->got);
     write_member(b, "in", f->in);
@@ -162,14 +162,14 @@ void problem_of_fault(buffer *b, const fault *f) {
   if (f->stage >= 0) buffer_format(b, ", \"stage\": %d", f->stage);
   if (isfinite(f->time)) {
     buffer_text(b, ", \"time\": ");
-    json_number(b, f->time, 0);
+    json_out_number(b, f->time, 0);
   }
   if (isfinite(f->could_be_met)) {
     buffer_text(b, ", \"could_be_met\": ");
-    json_error(b, f->could_be_met);
+    json_out_error(b, f->could_be_met);
   }
   buffer_text(b, ", \"faults\": [{\"at\": ");
-  json_string(b, f->at);
+  json_out_string(b, f->at);
   write_member(b, "is", f->is[0] ? f->is : status_message(f->status));
   buffer_text(b, "}]}\n");
 }

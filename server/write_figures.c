@@ -21,9 +21,9 @@ static void write_where(writing *w, double where) {
 
 static void write_why(writing *w, const figure_result *f) {
   buffer_text(w->b, "{\"value\": null, \"unit\": ");
-  json_string(w->b, quantity_label(f->dimension, w->units));
+  json_out_string(w->b, quantity_label(f->dimension, w->units));
   buffer_text(w->b, ", \"error\": null, \"why\": ");
-  json_string(w->b, f->value.why ? f->value.why : "not reached in the time computed");
+  json_out_string(w->b, f->value.why ? f->value.why : "not reached in the time computed");
 }
 
 /* tension and compression have a place and a time of their own; the components at one place and
@@ -31,7 +31,7 @@ static void write_why(writing *w, const figure_result *f) {
 static void write_named_parts(writing *w, const figure_result *f) {
   for (int i = 0; i < f->value.parts; i++) {
     buffer_text(w->b, ", ");
-    json_string(w->b, f->value.part[i].name);
+    json_out_string(w->b, f->value.part[i].name);
     buffer_text(w->b, ": {\"value\": ");
     write_value(w, f->value.part[i].value, f->dimension, f->error);
     write_where(w, f->value.part[i].where);
@@ -44,7 +44,7 @@ static void write_found(writing *w, const figure_result *f) {
   buffer_text(w->b, "{\"value\": ");
   write_value(w, f->value.value, f->dimension, f->error);
   buffer_text(w->b, ", \"unit\": ");
-  json_string(w->b, quantity_label(f->dimension, w->units));
+  json_out_string(w->b, quantity_label(f->dimension, w->units));
   buffer_text(w->b, ", \"error\": ");
   write_error(w, f->error, f->dimension);
   write_where(w, f->value.where);
@@ -67,7 +67,7 @@ void write_figures(writing *w) {
   for (int i = 0; i < w->r->figures; i++) {
     const figure_result *f = &w->r->figure[i];
     buffer_text(w->b, i ? ",\n    " : "\n    ");
-    json_string(w->b, w->c->figures.items[i].name);
+    json_out_string(w->b, w->c->figures.items[i].name);
     buffer_text(w->b, ": ");
     if (f->value.found)
       write_found(w, f);

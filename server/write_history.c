@@ -10,13 +10,13 @@ static void write_column(writing *w, int index) {
   const history *h = &w->r->history;
   dimension d = column_dimension(w, col);
   double error = quantity_out_difference(column_error(w, col), d, w->units);
-  json_string(w->b, column_name(w, col));
+  json_out_string(w->b, column_name(w, col));
   buffer_text(w->b, ": [");
   for (int i = 0; i < h->rows; i++) {
     if (i > 0) buffer_add(w->b, ", ", 2);
-    json_number(w->b,
-                quantity_out(h->value[(size_t)i * (size_t)h->columns + (size_t)index], d, w->units),
-                error);
+    json_out_number(
+        w->b, quantity_out(h->value[(size_t)i * (size_t)h->columns + (size_t)index], d, w->units),
+        error);
   }
   buffer_text(w->b, "]");
 }
@@ -63,7 +63,7 @@ static void write_array(writing *w, const double *value, int count, dimension d,
   buffer_text(w->b, "[");
   for (int i = 0; i < count; i++) {
     if (i > 0) buffer_add(w->b, ", ", 2);
-    json_number(w->b, quantity_out(value[i], d, w->units), shown_error);
+    json_out_number(w->b, quantity_out(value[i], d, w->units), shown_error);
   }
   buffer_text(w->b, "]");
 }

@@ -17,17 +17,18 @@ void writing_init(writing *w, const document *d, const heat_result *r, buffer *b
 }
 
 void write_value(writing *w, double value, dimension d, double error) {
-  json_number(w->b, quantity_out(value, d, w->units), quantity_out_difference(error, d, w->units));
+  json_out_number(w->b, quantity_out(value, d, w->units),
+                  quantity_out_difference(error, d, w->units));
 }
 
 void write_difference(writing *w, double value, dimension d, double error) {
-  json_number(w->b, quantity_out_difference(value, d, w->units),
-              quantity_out_difference(error, d, w->units));
+  json_out_number(w->b, quantity_out_difference(value, d, w->units),
+                  quantity_out_difference(error, d, w->units));
 }
 
 void write_error(writing *w, double error, dimension d) {
   if (isfinite(error))
-    json_error(w->b, quantity_out_difference(error, d, w->units));
+    json_out_error(w->b, quantity_out_difference(error, d, w->units));
   else
     buffer_text(w->b, "null");
 }

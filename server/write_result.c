@@ -11,7 +11,7 @@ static void write_stages(writing *w) {
   for (int i = 0; i < w->r->stages; i++) {
     const stage_result *s = &w->r->stage[i];
     buffer_text(w->b, i ? ",\n    {\"name\": " : "\n    {\"name\": ");
-    json_string(w->b, w->c->stages.items[i].name);
+    json_out_string(w->b, w->c->stages.items[i].name);
     buffer_text(w->b, ", \"start\": ");
     write_instant(w, s->start);
     buffer_text(w->b, ", \"end\": ");
@@ -34,7 +34,7 @@ static void write_energy(writing *w) {
     bool absent = i == 0 && !s->hollow(&w->c->part);
     if (absent) continue;
     if (!first) buffer_text(w->b, ", ");
-    json_string(w->b, s->faces[i]);
+    json_out_string(w->b, s->faces[i]);
     buffer_text(w->b, ": ");
     write_value(w, e->absorbed[i], s->energy, 0);
     first = false;
@@ -44,7 +44,7 @@ static void write_energy(writing *w) {
   buffer_text(w->b, ", \"generated\": ");
   write_value(w, e->generated, s->energy, 0);
   buffer_text(w->b, ", \"balance_error\": ");
-  json_error(w->b, e->balance_error);
+  json_out_error(w->b, e->balance_error);
   buffer_text(w->b, "}");
 }
 
@@ -55,7 +55,7 @@ static void write_numerics(writing *w) {
   buffer_format(w->b,
                 ", \"unknowns\": %d, \"steps\": %d, \"rejected\": %d, \"runs\": %d, \"method\": ",
                 n->unknowns, n->steps, n->rejected, n->runs);
-  json_string(w->b, n->method);
+  json_out_string(w->b, n->method);
   buffer_text(w->b, "}");
 }
 
@@ -67,7 +67,7 @@ static void write_source(writing *w, const material *m) {
   if (source.failed)
     w->b->failed = true;
   else
-    json_string(w->b, source.bytes);
+    json_out_string(w->b, source.bytes);
   buffer_free(&source);
 }
 
@@ -77,7 +77,7 @@ static void write_record(writing *w) {
   buffer_text(w->b, "\", \"service\": \"" CORESOAK_VERSION "\", \"materials\": {");
   for (int i = 0; i < w->c->materials.count; i++) {
     if (i > 0) buffer_text(w->b, ", ");
-    json_string(w->b, w->c->materials.items[i].name);
+    json_out_string(w->b, w->c->materials.items[i].name);
     buffer_text(w->b, ": ");
     write_source(w, &w->c->materials.items[i]);
   }
@@ -86,9 +86,9 @@ static void write_record(writing *w) {
 
 static void write_warning(writing *w, const warning *it, bool first) {
   buffer_text(w->b, first ? "\n    {\"at\": " : ",\n    {\"at\": ");
-  json_string(w->b, it->at);
+  json_out_string(w->b, it->at);
   buffer_text(w->b, ", \"is\": ");
-  json_string(w->b, it->is);
+  json_out_string(w->b, it->is);
   buffer_text(w->b, "}");
 }
 
@@ -105,7 +105,7 @@ static void write_cautions(writing *w) {
   buffer_text(w->b, "\"cautions\": [");
   for (int i = 0; sentences[i]; i++) {
     buffer_text(w->b, i ? ",\n    " : "\n    ");
-    json_string(w->b, sentences[i]);
+    json_out_string(w->b, sentences[i]);
   }
   buffer_text(w->b, "\n  ]");
 }
@@ -123,7 +123,7 @@ static void write_units(writing *w) {
   buffer_text(w->b, "\"units\": {");
   for (size_t i = 0; i < sizeof rows / sizeof rows[0]; i++) {
     buffer_format(w->b, i ? ", \"%s\": " : "\"%s\": ", rows[i].name);
-    json_string(w->b, quantity_label(rows[i].dimension, w->units));
+    json_out_string(w->b, quantity_label(rows[i].dimension, w->units));
   }
   buffer_text(w->b, "}");
 }
@@ -133,7 +133,7 @@ void write_result_json(const document *d, const heat_result *r, buffer *b) {
   writing_init(&w, d, r, b);
   buffer_text(b, "{\n  \"verdict\": ");
   if (verdict_names[r->verdict])
-    json_string(b, verdict_names[r->verdict]);
+    json_out_string(b, verdict_names[r->verdict]);
   else
     buffer_text(b, "null");
   static void (*const parts[])(writing *) = {

@@ -17,7 +17,7 @@ static void write_duration(buffer *b, double seconds) {
   double size = fabs(seconds);
   if (seconds < 0) buffer_text(b, "-");
   if (size < 2 * MINUTE) {
-    json_number(b, round(size * 10) / 10, 0);
+    json_out_number(b, round(size * 10) / 10, 0);
     buffer_text(b, " s");
   } else if (size < 2 * HOUR) {
     long s = lround(size);
