@@ -320,27 +320,30 @@ status property_build(property *p, const material *m, double from, double to, in
 
 /* The row of an enthalpy and the fraction in it; outside of the range the end rows' cubics would
    turn, so the fraction is kept in 0..1 and the rest is told apart in *beyond (J/m3). */
-static inline const double *row_of(const property *p, double enthalpy, double *fraction,
-                                   double *inverse, double *beyond) {
-  int s = 0;
-  while (s + 1 < p->segments && enthalpy >= p->segment[s + 1].start) s++;
+static inline const double *row_in(const property *p, int s, double enthalpy, double *fraction, double *inverse,
+                                   double *beyond) {
   const property_segment *segment = &p->segment[s];
   double x = (enthalpy - segment->start) * segment->inverse;
   int i = (int)x;
   i = i < 0 ? 0 : i;
   i = i > segment->count - 1 ? segment->count - 1 : i;
-  double part = x - i;
+  double part = x - i, kept = part < 0 ? 0 : part > 1 ? 1 : part;
   *inverse = segment->inverse;
-  *beyond = 0;
-  if (part < 0) {
-    *beyond = part / segment->inverse;
-    part = 0;
-  } else if (part > 1) {
-    *beyond = (part - 1) / segment->inverse;
-    part = 1;
-  }
-  *fraction = part;
+  *beyond = part == kept ? 0 : (part - kept) / segment->inverse;
+  *fraction = kept;
   return p->row[segment->first + i];
+}
+
+/* The segment of an enthalpy, sought from a guess: neighbours in space are neighbours in H. */
+static inline int segment_of(const property *p, int guess, double enthalpy) {
+  while (guess + 1 < p->segments && enthalpy >= p->segment[guess + 1].start) guess++;
+  while (guess > 0 && enthalpy < p->segment[guess].start) guess--;
+  return guess;
+}
+
+static inline const double *row_of(const property *p, double enthalpy, double *fraction, double *inverse,
+                                   double *beyond) {
+  return row_in(p, segment_of(p, 0, enthalpy), enthalpy, fraction, inverse, beyond);
 }
 
 static inline double cubic(const double *c, double f, double inverse, double beyond,
@@ -361,20 +364,22 @@ double property_potential(const property *p, double enthalpy, double *slope) {
   return cubic(row, f, inverse, beyond, slope);
 }
 
-void property_potentials(const property *p, int count, const double *enthalpy, double *potential,
-                         double *slope) {
+void property_potentials(const property *p, int count, const double *enthalpy, double *potential, double *slope) {
   double f, inverse, beyond, unused;
+  int guess = 0;
   for (int i = 0; i < count; i++) {
-    const double *row = row_of(p, enthalpy[i], &f, &inverse, &beyond);
+    guess = segment_of(p, guess, enthalpy[i]);
+    const double *row = row_in(p, guess, enthalpy[i], &f, &inverse, &beyond);
     potential[i] = cubic(row, f, inverse, beyond, slope ? &slope[i] : &unused);
   }
 }
 
-void property_temperatures(const property *p, int count, const double *enthalpy,
-                           double *temperature) {
+void property_temperatures(const property *p, int count, const double *enthalpy, double *temperature) {
   double f, inverse, beyond, slope;
+  int guess = 0;
   for (int i = 0; i < count; i++) {
-    const double *row = row_of(p, enthalpy[i], &f, &inverse, &beyond);
+    guess = segment_of(p, guess, enthalpy[i]);
+    const double *row = row_in(p, guess, enthalpy[i], &f, &inverse, &beyond);
     temperature[i] = cubic(row + 4, f, inverse, beyond, &slope);
   }
 }

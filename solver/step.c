@@ -73,19 +73,31 @@ static int factor(stepper *s, double gamma_h) {
   return tridiagonal_factor(&s->matrix, s->lower, s->diagonal, s->upper);
 }
 
-/* out = base + sum of weight_j U_j for j < count */
-static void combine(const stepper *s, double *out, const double *base, const double *weight,
-                    int count) {
-  int n = s->nodes;
-  if (base)
-    memcpy(out, base, (size_t)n * sizeof(double));
-  else
-    memset(out, 0, (size_t)n * sizeof(double));
+/* out = base + sum of weight_j U_j over j < count, in one pass; count is a constant where this is expanded. */
+static inline __attribute__((always_inline)) void sum_of(const stepper *s, double *restrict out, const double *base,
+                                                         const double *weight, const int count) {
+  const double *u[RODAS_STAGES];
+  double w[RODAS_STAGES];
   for (int j = 0; j < count; j++) {
-    double w = weight[j];
-    if (w == 0) continue;
-    const double *u = s->stage[j];
-    for (int i = 0; i < n; i++) out[i] += w * u[i];
+    u[j] = s->stage[j];
+    w[j] = weight[j];
+  }
+  for (int i = 0; i < s->nodes; i++) {
+    double sum = base ? base[i] : 0;
+    for (int j = 0; j < count; j++) sum += w[j] * u[j][i];
+    out[i] = sum;
+  }
+}
+
+static void combine(const stepper *s, double *out, const double *base, const double *weight, int count) {
+  switch (count) {
+  case 0: sum_of(s, out, base, weight, 0); return;
+  case 1: sum_of(s, out, base, weight, 1); return;
+  case 2: sum_of(s, out, base, weight, 2); return;
+  case 3: sum_of(s, out, base, weight, 3); return;
+  case 4: sum_of(s, out, base, weight, 4); return;
+  case 5: sum_of(s, out, base, weight, 5); return;
+  default: sum_of(s, out, base, weight, RODAS_STAGES);
   }
 }
 
