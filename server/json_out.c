@@ -20,8 +20,9 @@ enum {
   NUMBER_BYTES = 48
 };
 
-static const double ROUND_OFF = 1e-6;     /* of its error: a value below is noise around zero */
-static const double WHOLE_LIMIT = 1e15;   /* value + 1/2 is still exact below */
+static const double ROUND_OFF = 1e-6; /* of its error: a value below is noise around zero */
+static const double ROUND_OFF_OF_UNITS = 1e-12; /* 0.1 K is 0.18000000000000002 degF */
+static const double WHOLE_LIMIT = 1e15;         /* value + 1/2 is still exact below */
 static const double STEP_OF_ERROR = 0.01; /* numbers are rounded to this part of their error */
 
 static const double power_of_ten[LARGEST_EXACT_POWER + 1] = {
@@ -137,7 +138,7 @@ bool json_out_error(buffer *b, double error) {
   char text[NUMBER_BYTES];
   snprintf(text, sizeof text, "%.*e", ERROR_DIGITS - 1, fabs(error));
   double rounded = strtod(text, NULL);
-  if (rounded < fabs(error)) { /* one more in the last digit */
+  if (rounded < fabs(error) * (1 - ROUND_OFF_OF_UNITS)) { /* one more in the last digit */
     snprintf(text, sizeof text, "1e%d", atoi(strchr(text, 'e') + 1) - (ERROR_DIGITS - 1));
     rounded += strtod(text, NULL);
   }

@@ -81,7 +81,7 @@ Test(json_out, errors_are_rounded_up_to_three_digits) {
   cr_assert_str_eq(shown_error(0.12341), "0.124");
   cr_assert_str_eq(shown_error(9.9911), "10");
   cr_assert_str_eq(shown_error(0), "0");
-  cr_assert_str_eq(shown_error(1.0000001e-12), "1.01e-12");
+  cr_assert_str_eq(shown_error(1.0001e-12), "1.01e-12");
 }
 
 /* A reproducible stream of numbers over many sizes (Marsaglia's xorshift, 2003). */
