@@ -29,24 +29,45 @@ static void write_duration(buffer *b, double seconds) {
   }
 }
 
-/* A value with its unit; a time as a duration. */
-static void write_quantity(writing *w, double value, dimension d, double error) {
-  if (d == DIMENSION_TIME) {
-    write_duration(w->b, value);
-    return;
-  }
-  write_value(w, value, d, error);
-  buffer_format(w->b, " %s", quantity_label(d, w->units));
+/* Stress, energy and power run over many sizes: told in k, M or G of their unit. */
+static bool takes_prefix(const char *label) {
+  return strncmp(label, "Pa", 2) == 0 || strcmp(label, "J") == 0 || strcmp(label, "W") == 0 ||
+         strncmp(label, "J/m", 3) == 0 || strncmp(label, "W/m", 3) == 0;
 }
 
-static void write_spread(writing *w, double value, dimension d, double error) {
+static void write_prefixed(buffer *b, double value, const char *label) {
+  static const struct {
+    double factor;
+    const char *prefix;
+  } steps[] = {{1e9, "G"}, {1e6, "M"}, {1e3, "k"}, {0, ""}};
+  int i = 0;
+  while (fabs(value) < steps[i].factor) i++;
+  json_out_number(b, i < 3 ? value / steps[i].factor : value, INFINITY);
+  buffer_format(b, " %s%s", steps[i].prefix, label);
+}
+
+/* A value with its unit; a time as a duration. */
+static void write_quantity(writing *w, double value, dimension d, double error) {
+  const char *label = quantity_label(d, w->units);
   if (d == DIMENSION_TIME) {
     write_duration(w->b, value);
+  } else if (takes_prefix(label)) {
+    write_prefixed(w->b, quantity_out(value, d, w->units), label);
+  } else {
+    write_value(w, value, d, error);
+    buffer_format(w->b, " %s", label);
+  }
+}
+
+/* A difference or an error of such a value. */
+static void write_spread(writing *w, double value, dimension d, double error) {
+  const char *label =
+      quantity_label(d == DIMENSION_TEMPERATURE ? DIMENSION_DIFFERENCE : d, w->units);
+  if (d == DIMENSION_TIME || takes_prefix(label)) {
+    write_quantity(w, value, d, error);
     return;
   }
   write_difference(w, value, d, error);
-  const char *label =
-      quantity_label(d == DIMENSION_TEMPERATURE ? DIMENSION_DIFFERENCE : d, w->units);
   buffer_format(w->b, " %s", label);
 }
 
@@ -86,6 +107,8 @@ static void write_bound(writing *w, const char *words, double bound, dimension d
 
 static void write_judgement(writing *w, const figure_result *f, const requirement *q) {
   buffer_text(w->b, "; required");
+  if (q->which >= 0 && q->which < f->value.parts)
+    buffer_format(w->b, " %s", f->value.part[q->which].name);
   write_bound(w, " at least ", q->at_least, f->dimension);
   write_bound(w, " at most ", q->at_most, f->dimension);
   buffer_text(w->b, f->met ? ": met" : ": NOT MET");

@@ -29,7 +29,7 @@ static void *failing_realloc(void *old, size_t size) {
 /* A bored cylinder through two stages: the first ends by a condition, the second by its length. */
 static stage stages[] = {{.name = "heat_up", .end = STAGE_UNTIL}, {.name = "soak"}};
 static point points[] = {{.name = "mid"}, {.name = "skin, \"top\""}};
-static requirement at_least_30_min = {.at_least = 1800, .at_most = NAN};
+static requirement at_least_30_min = {.at_least = 1800, .at_most = NAN, .which = -1};
 static requirement at_most_25_k = {.at_least = NAN, .at_most = 25};
 static figure_kind kind_time = {.name = "time_at_temperature"};
 static figure_kind kind_peak = {.name = "peak"};
@@ -361,6 +361,7 @@ Test(write_result, text_for_a_reader) {
                     "which is within");
   contains(b.bytes, "no value, mid stayed below 900 degC; required at least 30 min: NOT MET\n");
   contains(b.bytes, "853.1 degC ± 0.12 K");
+  contains(b.bytes, "tension 250 MPa at 0:00:15, compression -400 MPa");
   contains(b.bytes, "Verdict   CLOSE");
   contains(b.bytes, "/part/diameter: bare length");
   contains(b.bytes, "verify with thermocouples");
