@@ -36,7 +36,7 @@ static json_t *melting(const json_t *m) {
 
 static json_t *library_name(const char *text) {
   if (strstr(text, "EN 1993-1-2 carbon steel")) return json_string("carbon_steel");
-  if (strstr(text, "EN 1992-1-2 concrete")) return json_string("concrete_lower");
+  if (strstr(text, "EN 1992-1-2 concrete")) return json_string("concrete_lower_1_5");
   return NULL;
 }
 
