@@ -3,15 +3,19 @@
 #include "chance.h"
 #include <math.h>
 
-chance chance_of(uint64_t seed) {
-  return (chance){seed * 0x9e3779b97f4a7c15u + 0x1234567u};
-}
-
 static uint64_t next(chance *c) {
   uint64_t z = c->state += 0x9e3779b97f4a7c15u;
   z = (z ^ (z >> 30)) * 0xbf58476d1ce4e5b9u;
   z = (z ^ (z >> 27)) * 0x94d049bb133111ebu;
   return z ^ (z >> 31);
+}
+
+/* A seed is mixed before use: sequences of neighbouring seeds would otherwise be one sequence
+ * shifted. */
+chance chance_of(uint64_t seed) {
+  chance c = {seed ^ 0x5851f42d4c957f2du};
+  uint64_t high = next(&c) << 32;
+  return (chance){next(&c) ^ high ^ seed * 0xd1342543de82ef95u};
 }
 
 double chance_between(chance *c, double low, double high) {
