@@ -29,6 +29,11 @@ static const double power_of_ten[LARGEST_EXACT_POWER + 1] = {
     1e0,  1e1,  1e2,  1e3,  1e4,  1e5,  1e6,  1e7,  1e8,  1e9,  1e10, 1e11,
     1e12, 1e13, 1e14, 1e15, 1e16, 1e17, 1e18, 1e19, 1e20, 1e21, 1e22};
 
+/* The exponent of what printf wrote by %e. */
+static int printed_exponent(const char *text) {
+  return (int)strtol(strchr(text, 'e') + 1, NULL, 10);
+}
+
 /* floor(log10 value) of a positive finite value, by comparing. */
 static int decimal_exponent(double value) {
   if (value >= 1 && value < 1e22) {
@@ -44,7 +49,7 @@ static int decimal_exponent(double value) {
   }
   char text[NUMBER_BYTES];
   snprintf(text, sizeof text, "%.*e", MOST_DIGITS, value);
-  return atoi(strchr(text, 'e') + 1);
+  return printed_exponent(text);
 }
 
 /* Digits after the point (negative: zeros before it) that a value with this error deserves. */
@@ -99,7 +104,7 @@ static void add_exactly(buffer *b, double value, int significant) {
   int count = 0;
   for (const char *c = text; *c != 'e'; c++)
     if (*c != '.') digits[count++] = *c;
-  add_digits(b, digits, count, atoi(strchr(text, 'e') + 1));
+  add_digits(b, digits, count, printed_exponent(text));
 }
 
 /* A positive finite value with that many decimals. */
@@ -139,7 +144,7 @@ bool json_out_error(buffer *b, double error) {
   snprintf(text, sizeof text, "%.*e", ERROR_DIGITS - 1, fabs(error));
   double rounded = strtod(text, NULL);
   if (rounded < fabs(error) * (1 - ROUND_OFF_OF_UNITS)) { /* one more in the last digit */
-    snprintf(text, sizeof text, "1e%d", atoi(strchr(text, 'e') + 1) - (ERROR_DIGITS - 1));
+    snprintf(text, sizeof text, "1e%d", printed_exponent(text) - (ERROR_DIGITS - 1));
     rounded += strtod(text, NULL);
   }
   return json_out_number(b, isfinite(rounded) ? rounded : error, INFINITY);

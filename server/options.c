@@ -88,9 +88,9 @@ static int switch_in(const char *text) {
 }
 
 static double value_in(const option_row *row, const char *text) {
+  if (row->kind == OPTION_BYTES) return bytes_in(text);
   char *rest;
-  double value = row->kind == OPTION_BYTES ? bytes_in(text) : number_in(text, &rest);
-  if (row->kind == OPTION_BYTES) return value;
+  double value = number_in(text, &rest);
   if (*rest != '\0' || (row->kind == OPTION_COUNT && value != floor(value))) return NAN;
   return value;
 }

@@ -12,7 +12,8 @@ typedef struct writing {
   const heat_case *c;
   const heat_result *r;
   const output_units *units;
-  double end_error[LIMIT_STAGES]; /* s: how sure the end of each stage is, earlier stages counted in */
+  double
+      end_error[LIMIT_STAGES]; /* s: how sure the end of each stage is, earlier stages counted in */
 } writing;
 
 void writing_init(writing *w, const document *d, const heat_result *r, buffer *b);
