@@ -24,7 +24,7 @@ static void name_the_stage(const heat_case *c, fault *f) {
   snprintf(where + length, sizeof where - (size_t)length, ")");
   size_t used = strlen(f->is), room = sizeof f->is - 1 - strlen(where);
   if (used > room) used = room;
-  strcpy(f->is + used, where);
+  memcpy(f->is + used, where, strlen(where) + 1);
   if (!f->at[0]) snprintf(f->at, sizeof f->at, "/stages/%d", f->stage);
 }
 
