@@ -126,7 +126,7 @@ typedef struct stage {
 
 typedef struct requirement {
   double at_least, at_most; /* in the figure's unit, SI and kelvin; NAN if absent */
-  int which;                /* stress only: 0 tension, 1 compression, 2 the component named by which_component */
+  int which;                /* stress only: index of the component (stress_part_named); 0 if not named */
 } requirement;
 
 enum figure_count { COUNT_TOTAL, COUNT_LONGEST };

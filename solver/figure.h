@@ -98,4 +98,9 @@ dimension target_dimension(const target *t, const heat_case *c);
    interpolant; returns how many, at most SEGMENT_SAMPLES - 1, in rising time. direction +1, -1 or 0 (both). */
 int segment_crossings(const segment *s, int trace, double level, int direction, double times[SEGMENT_SAMPLES]);
 
+/* Index into figure_value.part of a component of a stress figure by name ("tension", "compression" | "in_plane" |
+   "radial", "hoop", "axial", by shape and whether the figure has `at`): what requirement.which holds. -1 if it has no
+   such component. Components at a place are signed, tension positive; `compression` is told as a positive number. */
+int stress_part_named(const figure *f, const heat_case *c, const char *name);
+
 #endif

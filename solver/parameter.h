@@ -73,14 +73,15 @@ typedef enum value_kind {
   VALUE_TARGET,      /* struct target (case.h): a PLACE ("of", with an "in" beside it) or a figure */
   VALUE_LEVEL,       /* double in the dimension of the target named beside it (rises_to, require ...) */
   VALUE_LOCATION,    /* struct location (case.h): "center", {"face", "depth"}, coordinates */
-  VALUE_INSTANT,     /* struct instant (case.h): a time or "end:STAGE" */
+  VALUE_INSTANT,     /* struct instant * (case.h): a time or "end:STAGE"; NULL if absent */
   VALUE_INSTANTS,    /* LIST(instant) */
   VALUE_STAGE_SET,   /* struct stage_set (case.h): a stage's name or a list of them */
   VALUE_FACE,        /* int: index of a face of the shape; -1 for "all" or absent */
   VALUE_FACES,       /* struct faces (case.h): face name -> condition, "all" */
   VALUE_START,       /* struct start (case.h) */
   VALUE_UNTIL,       /* struct until (case.h) */
-  VALUE_PLACES       /* struct columns (case.h): what a history or the fields hold */
+  VALUE_PLACES,      /* struct columns (case.h): what a history or the fields hold */
+  VALUE_OPTIONAL_LOCATION /* struct location * (case.h), NULL if absent */
 } value_kind;
 
 enum parameter_flags {
