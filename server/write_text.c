@@ -1,5 +1,7 @@
 /* write_text.c: the answer of a solve as lines that a person reads at a furnace: clock times as
    h:mm:ss, durations in words, each requirement with what is to spare. */
+#include "figure.h"
+#include "shape.h"
 #include "write_parts.h"
 
 #include <math.h>
@@ -145,13 +147,39 @@ static void write_figure_value(writing *w, const figure_result *f) {
   }
 }
 
+static const char *watched_name(const heat_case *c, const target *t) {
+  if (t->is_figure) return c->figures.items[t->figure].name;
+  switch (t->place.kind) {
+  case PLACE_POINT: return c->points.items[t->place.index].name;
+  case PLACE_FACE: return c->part.shape->faces[t->place.index];
+  case PLACE_COLDEST: return "coldest";
+  case PLACE_HOTTEST: return "hottest";
+  case PLACE_MEAN: return "mean";
+  case PLACE_SECTION_DIFFERENCE: return "section difference";
+  case PLACE_CENTER: return "center";
+  case PLACE_MID_WALL: return "mid wall";
+  }
+  return "";
+}
+
+/* "time at temperature of coldest in layer core" */
+static void write_subject(writing *w, const figure *asked) {
+  for (const char *c = asked->kind->name; *c; c++) buffer_add(w->b, *c == '_' ? " " : c, 1);
+  if (!asked->kind->takes_place) return;
+  buffer_format(w->b, " of %s", watched_name(w->c, &asked->of));
+  int layer = asked->of.is_figure ? -1 : asked->of.place.layer;
+  if (layer >= 0) buffer_format(w->b, " in %s", w->c->part.layers.items[layer].name);
+}
+
 static void write_figure_lines(writing *w) {
   if (w->r->figures == 0) return;
   buffer_text(w->b, "\nFigures\n");
   for (int i = 0; i < w->r->figures; i++) {
     const figure *asked = &w->c->figures.items[i];
     const figure_result *f = &w->r->figure[i];
-    buffer_format(w->b, "  %-20s %s: ", asked->name, asked->kind->name);
+    buffer_format(w->b, "  %-20s ", asked->name);
+    write_subject(w, asked);
+    buffer_text(w->b, ": ");
     if (f->value.found)
       write_figure_value(w, f);
     else

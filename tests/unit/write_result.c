@@ -32,14 +32,18 @@ static point points[] = {{.name = "mid"}, {.name = "skin, \"top\""}};
 static requirement at_least_30_min = {.at_least = 1800, .at_most = NAN, .which = -1};
 static requirement at_most_25_k = {.at_least = NAN, .at_most = 25};
 static figure_kind kind_time = {.name = "time_at_temperature"};
-static figure_kind kind_peak = {.name = "peak"};
+static figure_kind kind_peak = {.name = "peak", .takes_place = true};
 static figure_kind kind_time_to = {.name = "time_to"};
 static figure_kind kind_stress = {.name = "stress"};
-static figure figures[] = {{.name = "soaked", .kind = &kind_time, .require = &at_least_30_min},
-                           {.name = "even", .kind = &kind_peak, .require = &at_most_25_k},
-                           {.name = "never", .kind = &kind_time_to},
-                           {.name = "hottest", .kind = &kind_peak},
-                           {.name = "pull", .kind = &kind_stress}};
+static figure figures[] = {
+    {.name = "soaked", .kind = &kind_time, .require = &at_least_30_min},
+    {.name = "even",
+     .kind = &kind_peak,
+     .of = {.place = {PLACE_SECTION_DIFFERENCE, 0, -1}},
+     .require = &at_most_25_k},
+    {.name = "never", .kind = &kind_time_to},
+    {.name = "hottest", .kind = &kind_peak, .of = {.place = {PLACE_POINT, 0, -1}}},
+    {.name = "pull", .kind = &kind_stress}};
 static material materials[] = {{.name = "steel_a", .source = "a handbook", .revision = "2"},
                                {.name = "mine"}};
 static named_series series_rows[] = {{.name = "zone", .dimension = DIMENSION_TEMPERATURE}};
@@ -360,7 +364,9 @@ Test(write_result, text_for_a_reader) {
   contains(b.bytes, "24.98 K ± 0.1 K at 0:20:35; required at most 25 K: met with 0.02 K to spare, "
                     "which is within");
   contains(b.bytes, "no value, mid stayed below 900 degC; required at least 30 min: NOT MET\n");
-  contains(b.bytes, "853.1 degC ± 0.12 K");
+  contains(b.bytes, "time at temperature: 41 min");
+  contains(b.bytes, "peak of section difference: 24.98");
+  contains(b.bytes, "peak of mid: 853.1 degC ± 0.12 K");
   contains(b.bytes, "tension 250 MPa at 0:00:15, compression -400 MPa");
   contains(b.bytes, "Verdict   CLOSE");
   contains(b.bytes, "/part/diameter: bare length");
