@@ -98,7 +98,7 @@ static int march_stage(bdf *b, int index, double start) {
   return 0;
 }
 
-static void open(bdf *b, probe *p, double tolerance) {
+static void bdf_open(bdf *b, probe *p, double tolerance) {
   int n = p->mesh.nodes;
   memset(b, 0, sizeof *b);
   b->p = p;
@@ -112,7 +112,7 @@ static void open(bdf *b, probe *p, double tolerance) {
   for (int i = 0; i < n; i++) NV_Ith_S(b->tolerance, i) = tolerance / p->stepper.scale[i];
 }
 
-static void done(bdf *b) {
+static void bdf_close(bdf *b) {
   CVodeFree(&b->memory);
   SUNLinSolFree(b->solver);
   SUNMatDestroy(b->matrix);
@@ -126,7 +126,7 @@ int bdf_march(probe *p, double tolerance) {
   bdf b;
   fault f;
   double start = 0;
-  open(&b, p, tolerance);
+  bdf_open(&b, p, tolerance);
   p->next = 0;
   p->steps = 0;
   p->balance = NAN;
@@ -136,6 +136,6 @@ int bdf_march(probe *p, double tolerance) {
     bad = march_stage(&b, i, start);
     start += p->the_case->stages.items[i].lasts;
   }
-  done(&b);
+  bdf_close(&b);
   return bad ? -1 : 0;
 }
