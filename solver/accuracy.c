@@ -10,6 +10,9 @@
 #define COARSE_TOLERANCE 8.0   /* of the coarse twin's steps over the fine run's */
 #define MOST_WORK        1.2e8 /* nodes x steps of one run: some ten seconds on one core */
 #define TABLE_INTERVALS  512
+#define SPACE_SHARE      0.7 /* of the numerical error: what a refined plan aims at for mesh and steps \
+                              */
+#define TIME_SHARE 0.25
 
 enum { MOST_REFINEMENTS = 9, MOST_WIDENINGS = 8 };
 
@@ -89,6 +92,7 @@ static status run_pair(accuracy *a, int refinement, fault *f) {
   double from = 1 - 1.0 / (1 << refinement), to = 1 - 0.5 / (1 << refinement);
   double split = from + 0.7 * (to - from), durations[LIMIT_STAGES];
   drop_attempts(a);
+  a->progress = to;
   status bad = attempt_new(&a->fine, a->the_case, &a->plan, a->properties, 1, NULL, f);
   if (!bad) bad = attempt_run(a->fine, a->plan.tolerance, NULL, a->control, from, split, f);
   if (bad) return bad;
@@ -135,7 +139,7 @@ double accuracy_figure_error(const accuracy *a, int figure, const figure_value *
 }
 
 /* Largest error of the figures that are temperatures. */
-static double figures_in_kelvin(const accuracy *a) {
+static double figures_in_kelvin(const accuracy *a, const attempt *twin) {
   double most = 0;
   const heat_case *c = a->the_case;
   for (int i = 0; i < c->figures.count; i++) {
@@ -144,18 +148,45 @@ static double figures_in_kelvin(const accuracy *a) {
     if (d != DIMENSION_TEMPERATURE && d != DIMENSION_DIFFERENCE) continue;
     figure_value fine = {0}, coarse = {0};
     g->kind->finish(&a->fine->observer.run[i], &fine);
-    g->kind->finish(&a->coarse->observer.run[i], &coarse);
+    g->kind->finish(&twin->observer.run[i], &coarse);
     if (fine.found && coarse.found) most = fmax(most, fabs(fine.value - coarse.value));
   }
   return most;
 }
 
-static bool refine(accuracy *a, double ratio) {
+/* How much of the estimate is the mesh's: the coarse mesh once more with the fine run's tolerance.
+ */
+static status space_part(accuracy *a, double worst, double *space, fault *f) {
+  double durations[LIMIT_STAGES];
+  attempt *probe = NULL;
+  for (int i = 0; i < a->the_case->stages.count; i++)
+    durations[i] = a->fine->outcome.stage[i].end - a->fine->outcome.stage[i].start;
+  status bad = attempt_new(&probe, a->the_case, &a->plan, a->properties, 2, &a->fine->observer, f);
+  if (!bad)
+    bad = attempt_run(probe, a->plan.tolerance, durations, a->control, a->progress, a->progress, f);
+  if (!bad) {
+    *space =
+        fmax(observe_difference(&a->fine->observer, &probe->observer), figures_in_kelvin(a, probe));
+    *space = fmin(*space, worst);
+    a->runs++;
+  }
+  attempt_free(probe);
+  return bad;
+}
+
+/* Chooses the next plan from the two parts of the error; false when the limits leave no room. */
+static bool refine(accuracy *a, double space, double time) {
+  double target = a->the_case->numerical_error;
   double work = (double)a->fine->stepper.nodes * a->fine->outcome.steps;
-  double factor = fmin(4, fmax(1.3, sqrt(1.3 * ratio)));
-  int cells = plan_rung(a->plan.cells * factor);
-  if (cells == a->plan.cells || work * factor * factor > MOST_WORK) return false;
-  a->plan.tolerance /= fmin(8, fmax(1.6, 1.3 * ratio));
+  double finer =
+      space > SPACE_SHARE * target ? fmin(4, fmax(1.3, sqrt(space / (SPACE_SHARE * target)))) : 1;
+  double sharper =
+      time > TIME_SHARE * target ? fmin(16, fmax(2, 1.3 * time / (TIME_SHARE * target))) : 1;
+  if (finer == 1 && sharper == 1) sharper = 2;
+  int cells = finer > 1 ? plan_rung(a->plan.cells * finer) : a->plan.cells;
+  if (finer > 1 && cells == a->plan.cells) return false;
+  if (work * finer * sqrt(sqrt(sharper)) > MOST_WORK) return false;
+  a->plan.tolerance /= sharper;
   a->plan.cells = cells;
   plan_end_cells(&a->plan, a->the_case, a->properties);
   return true;
@@ -190,10 +221,13 @@ static status run_until_met(accuracy *a, fault *f) {
       return fail(f, STATUS_NOT_FINITE, "/stages",
                   "a temperature runs away; look at heat_generation and flux");
     a->estimate = observe_difference(&a->fine->observer, &a->coarse->observer);
-    double worst = fmax(a->estimate, figures_in_kelvin(a));
+    double worst = fmax(a->estimate, figures_in_kelvin(a, a->coarse));
     if (worst <= a->the_case->numerical_error) return STATUS_OK;
     best = fmin(best, worst);
-    if (!refine(a, worst / a->the_case->numerical_error)) break;
+    double space = worst;
+    bad = space_part(a, worst, &space, f);
+    if (bad) return bad;
+    if (!refine(a, space, worst - space)) break;
   }
   return not_met(a, best, f);
 }

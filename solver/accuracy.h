@@ -28,6 +28,7 @@ typedef struct accuracy {
   attempt *fine, *coarse;
   double estimate; /* K */
   int runs;
+  double progress;          /* fraction told so far */
   arena memory;
 } accuracy;
 
