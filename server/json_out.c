@@ -25,27 +25,29 @@ static const double ROUND_OFF_OF_UNITS = 1e-12; /* 0.1 K is 0.18000000000000002 
 static const double WHOLE_LIMIT = 1e15;         /* value + 1/2 is still exact below */
 static const double STEP_OF_ERROR = 0.01; /* numbers are rounded to this part of their error */
 
-static const double power_of_ten[LARGEST_EXACT_POWER + 1] = {
-    1e0,  1e1,  1e2,  1e3,  1e4,  1e5,  1e6,  1e7,  1e8,  1e9,  1e10, 1e11,
-    1e12, 1e13, 1e14, 1e15, 1e16, 1e17, 1e18, 1e19, 1e20, 1e21, 1e22};
+/* 10^-22 to 10^22, those from 1 on exact. */
+static const double powers_of_ten[2 * LARGEST_EXACT_POWER + 1] = {
+    1e-22, 1e-21, 1e-20, 1e-19, 1e-18, 1e-17, 1e-16, 1e-15, 1e-14, 1e-13, 1e-12, 1e-11,
+    1e-10, 1e-9,  1e-8,  1e-7,  1e-6,  1e-5,  1e-4,  1e-3,  1e-2,  1e-1,  1e0,   1e1,
+    1e2,   1e3,   1e4,   1e5,   1e6,   1e7,   1e8,   1e9,   1e10,  1e11,  1e12,  1e13,
+    1e14,  1e15,  1e16,  1e17,  1e18,  1e19,  1e20,  1e21,  1e22};
+static const double *const power_of_ten = powers_of_ten + LARGEST_EXACT_POWER;
 
 /* The exponent of what printf wrote by %e. */
 static int printed_exponent(const char *text) {
   return (int)strtol(strchr(text, 'e') + 1, NULL, 10);
 }
 
-/* floor(log10 value) of a positive finite value, by comparing. */
+/* floor(log10 value) of a positive finite value: from its binary exponent, then by one comparison.
+   1233/4096 stands for log10 2: close enough over this range, in which no power of two is within a
+   thousandth of a power of ten but 1. */
 static int decimal_exponent(double value) {
-  if (value >= 1 && value < 1e22) {
-    int e = 0;
-    if (value >= 1e8) e = 8;
-    while (value >= power_of_ten[e + 1]) e++;
-    return e;
-  }
-  if (value < 1 && value >= 1e-20) {
-    int e = 1;
-    while (value * power_of_ten[e] < 1) e++;
-    return -e;
+  if (value >= 1e-20 && value < 1e22) {
+    uint64_t bits;
+    memcpy(&bits, &value, sizeof bits);
+    int binary = (int)(bits >> 52) - 1023;
+    int least = ((binary + 4096) * 1233 >> 12) - 1233;
+    return least + (value >= powers_of_ten[LARGEST_EXACT_POWER + least + 1]);
   }
   char text[NUMBER_BYTES];
   snprintf(text, sizeof text, "%.*e", MOST_DIGITS, value);
@@ -63,23 +65,40 @@ static int decimals_for(int exponent, double error) {
   return decimals > most ? most : decimals;
 }
 
-/* whole / 10^decimals as text, ending at `end`; returns its start. */
-static char *print_whole(char *end, uint64_t whole, int decimals) {
-  while (decimals > 0 && whole % 10 == 0) {
-    whole /= 10;
-    decimals--;
-  }
+static const char digit_pairs[] = "00010203040506070809101112131415161718192021222324"
+                                  "25262728293031323334353637383940414243444546474849"
+                                  "50515253545556575859606162636465666768697071727374"
+                                  "75767778798081828384858687888990919293949596979899";
+
+/* Digits of a whole number, ending at `end`; returns their start. */
+static char *print_digits(char *end, uint64_t whole) {
   char *at = end;
-  for (int i = 0; i < decimals; i++) {
-    *--at = (char)('0' + whole % 10);
-    whole /= 10;
+  while (whole >= 100) {
+    at -= 2;
+    memcpy(at, digit_pairs + 2 * (whole % 100), 2);
+    whole /= 100;
   }
-  if (decimals > 0) *--at = '.';
-  do {
-    *--at = (char)('0' + whole % 10);
-    whole /= 10;
-  } while (whole > 0);
+  if (whole >= 10) {
+    at -= 2;
+    memcpy(at, digit_pairs + 2 * whole, 2);
+  } else {
+    *--at = (char)('0' + whole);
+  }
   return at;
+}
+
+/* whole / 10^decimals as text, ending at `end` or at the zeros left out before it (*stop); returns
+ * its start. */
+static char *print_whole(char *end, uint64_t whole, int decimals, char **stop) {
+  char *at = print_digits(end, whole), *point = end - decimals;
+  *stop = end;
+  if (decimals == 0) return at;
+  while (at >= point) *--at = '0';
+  for (char *digit = at; digit < point; digit++) digit[-1] = *digit;
+  point[-1] = '.';
+  while ((*stop)[-1] == '0') --*stop;
+  if ((*stop)[-1] == '.') --*stop;
+  return at - 1;
 }
 
 /* Text of `count` digits with the first at 10^exponent, for what print_whole cannot hold. */
@@ -113,10 +132,10 @@ static void add_rounded(buffer *b, double value, int exponent, int decimals, boo
                       ? value * power_of_ten[decimals]
                       : INFINITY;
   if (scaled < WHOLE_LIMIT) {
-    char text[NUMBER_BYTES], *end = text + sizeof text;
-    char *at = print_whole(end, (uint64_t)(scaled + 0.5), decimals);
+    char text[NUMBER_BYTES], *stop;
+    char *at = print_whole(text + sizeof text, (uint64_t)(scaled + 0.5), decimals, &stop);
     if (negative) *--at = '-';
-    buffer_add(b, at, (size_t)(end - at));
+    buffer_add(b, at, (size_t)(stop - at));
     return;
   }
   if (negative) buffer_add(b, "-", 1);
