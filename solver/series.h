@@ -33,7 +33,7 @@ typedef struct ramp_form { double from, to, rate; } ramp_form;
 typedef struct sine_form { double mean, amplitude, period, phase; } sine_form;
 typedef struct zone_form { double length, value; } zone_form;
 typedef struct line_form { double speed, blend; LIST(zone_form) zones; } line_form;
-extern const object_type ramp_type, sine_type, line_type; /* `from`, `to`, ... have DIMENSION_ANY */
+extern const object_type ramp_type, sine_type, zone_type, line_type; /* `from`, `to`, ... have DIMENSION_ANY */
 
 /* Value at time t (s, from the series' own origin). At a jump the value after it. */
 double series_value(const series *s, double t);
