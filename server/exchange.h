@@ -34,6 +34,7 @@ typedef struct request {
   int route;                    /* index, -1 before a route was found */
   char argument[ARGUMENT_TEXT]; /* what stands in the path for the route's {name} */
   char job[JOB_ID];             /* of the job that it made or waits for, "" if none */
+  bool slow;                    /* takes long to answer: not by a thread that others wait for */
   bool waited;                  /* the wait that it asked for is over */
   bool departed;                /* the caller went away while it waited */
 } request;

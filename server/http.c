@@ -10,6 +10,7 @@
 #include "audit.h"
 #include "clock.h"
 #include "gzip.h"
+#include "http_desk.h"
 #include "http_listen.h"
 #include "http_watch.h"
 #include "problem.h"
@@ -26,7 +27,8 @@ enum {
   DRAIN_LIMIT = 64 << 20,  /* bytes of a refused body that are read so that its sender sees why */
   MEMORY_LIMIT = 32 << 10, /* of a connection: bounds its headers */
   GZIP_PIECE = 32 << 10,
-  WAITERS_SHARE = 2 /* of the connections, one in so many may wait */
+  LARGE_BODY = 64 << 10, /* takes more than a millisecond to read */
+  WAITERS_SHARE = 2      /* of the connections, one in so many may wait */
 };
 
 struct http {
@@ -34,6 +36,7 @@ struct http {
   http_app app;
   struct MHD_Daemon *daemon;
   http_watch *watch;
+  http_desk *desk;
   buffer too_slow;
   int port;
   bool quiet;
@@ -49,6 +52,7 @@ typedef struct exchange {
   reply reply;
   double began;
   bool begun, refused, expects;
+  bool answered; /* by the desk, while suspended */
   size_t received, sent;
   int status;
 } exchange;
@@ -272,15 +276,35 @@ static enum MHD_Result wait_for_job(exchange *x) {
   return MHD_YES;
 }
 
-/* The last call: the request is whole, or a wait is over. */
+/* From the desk's thread: answers a suspended exchange. */
+static void answer_at_desk(void *item, bool closing) {
+  exchange *x = item;
+  const http_app *app = &x->http->app;
+  if (closing)
+    reply_problem(&x->reply, 503, "the service is stopping");
+  else
+    app->answer(app->self, &x->request, &x->reply);
+  x->answered = true;
+  MHD_resume_connection(x->socket);
+}
+
+/* The last call: the request is whole, a wait is over, or the desk has answered. */
 static enum MHD_Result conclude(exchange *x) {
   http *h = x->http;
-  if (!x->refused) {
-    watch_enter(h->watch, x->connection, PHASE_WORK, 0);
-    h->app.answer(h->app.self, &x->request, &x->reply);
-    if (x->reply.wait > 0) return wait_for_job(x);
+  request *q = &x->request;
+  if (x->refused) return send_reply(x);
+  watch_enter(h->watch, x->connection, PHASE_WORK, 0);
+  if (!x->answered && (q->slow || q->body.length > LARGE_BODY)) {
+    MHD_suspend_connection(x->socket);
+    if (desk_hand(h->desk, x)) return MHD_YES;
+    MHD_resume_connection(x->socket);
+    x->answered = true;
+    reply_problem(&x->reply, 503, "out of memory");
+    return MHD_YES;
   }
-  return send_reply(x);
+  if (!x->answered) h->app.answer(h->app.self, q, &x->reply);
+  x->answered = false;
+  return x->reply.wait > 0 ? wait_for_job(x) : send_reply(x);
 }
 
 static enum MHD_Result on_request(void *self, struct MHD_Connection *socket, const char *url,
@@ -379,6 +403,7 @@ static struct MHD_Daemon *start(http *h, int listening) {
 }
 
 static void free_http(http *h) {
+  desk_close(h->desk);
   watch_close(h->watch);
   buffer_free(&h->too_slow);
   pthread_mutex_destroy(&h->mutex);
@@ -394,7 +419,8 @@ http *http_open(const http_settings *settings, const http_app *app, char *messag
   h->app = *app;
   pthread_mutex_init(&h->mutex, NULL);
   buffer_init(&h->too_slow, 0);
-  if (!open_watch(h)) goto out;
+  h->desk = desk_open(answer_at_desk);
+  if (!h->desk || !open_watch(h)) goto out;
   listening = http_listen(settings->listen, &h->port, message, size);
   if (listening < 0) goto out;
   h->daemon = start(h, listening);
@@ -431,6 +457,8 @@ void http_close(http *h, double seconds) {
   http_quiesce(h);
   watch_wake(h->watch, NULL);
   while (exchanges_of(h) > 0 && clock_steady() < until) usleep(2000);
+  desk_close(h->desk); /* which resumes what it has: nothing may be suspended now */
+  h->desk = NULL;
   MHD_stop_daemon(h->daemon);
   free_http(h);
 }

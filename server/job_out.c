@@ -41,7 +41,8 @@ double job_expected(const service *s, const job_view *job) {
   double usual = metrics_usual_seconds(s->metrics);
   double running = clock_wall() - job->started;
   switch (job->state) {
-  case JOB_QUEUED: return usual > 0 ? usual * (1 + (double)job->position / s->workers) : NAN;
+  case JOB_QUEUED:
+    return usual > 0 && job->position >= 0 ? usual * (1 + (double)job->position / s->workers) : NAN;
   case JOB_RUNNING:
     if (job->fraction > 0.01) return running * (1 - job->fraction) / job->fraction;
     return usual > running ? usual - running : NAN;

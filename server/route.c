@@ -16,7 +16,7 @@ const route routes[] = {
     {"/openapi.json", route_specification, NULL, NULL, NULL},
     {"/v1/jobs", route_jobs, NULL, NULL, NULL},
     {"/v1/jobs/{id}", route_job, NULL, route_job_cancel, NULL},
-    {"/v1/jobs/{id}/result", route_result, NULL, NULL, NULL},
+    {"/v1/jobs/{id}/result", route_result, NULL, NULL, admit_result},
     {"/v1/materials", route_materials, NULL, NULL, NULL},
     {"/v1/materials/{name}", route_material, NULL, NULL, NULL},
     {"/v1/{kind}", NULL, route_submit, NULL, admit_job},
@@ -76,7 +76,7 @@ static void admit(void *self, request *q, reply *r) {
     reply_problem(r, 404, NULL);
   else if (!function_of(found, q->method))
     refuse_method(found, r);
-  else if (q->method == METHOD_POST && found->admit)
+  else if (found->admit)
     found->admit(s, q, r);
 }
 

@@ -21,6 +21,7 @@ void route_ready(service *s, request *q, reply *r) {
     return;
   }
   bool stopping = atomic_load(&s->draining);
+  reply_header_set(r, "Retry-After", "%d", retry_after(s));
   reply_problem(r, 503, stopping ? "the service is stopping" : "the service failed its self-test");
 }
 

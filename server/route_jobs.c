@@ -10,7 +10,13 @@
 #include <stdlib.h>
 #include <string.h>
 
-enum { USUAL_LIST = 50, LONGEST_LIST = 200, TAG_TEXT = 64, TAG_DIGITS = 32 };
+enum {
+  USUAL_LIST = 50,
+  LONGEST_LIST = 200,
+  TAG_TEXT = 64,
+  TAG_DIGITS = 32,
+  LARGE_RESULT = 256 << 10
+};
 
 static const char *const result_types[] = {"application/json", "text/csv", NULL};
 static const media result_media[] = {MEDIA_JSON, MEDIA_CSV};
@@ -146,6 +152,18 @@ void route_job(service *s, request *q, reply *r) {
   if (!look(s, q, r, &job)) return;
   if (!is_over(&job)) reply_header_set(r, "Retry-After", "%d", retry_after_job(s, &job));
   reply_job(s, r, &job, 200);
+  s->store->release(s->store, &job);
+}
+
+/* Rows are written when they are asked for, which takes a while for a large result. */
+void admit_result(service *s, request *q, reply *r) {
+  job_view job;
+  int type = accepted_type(q);
+  (void)r;
+  if (type < 0 || result_media[type] == MEDIA_JSON) return;
+  if (strlen(q->argument) >= sizeof q->job || s->store->look(s->store, q->argument, &job) != 0)
+    return;
+  q->slow = job.text_length > LARGE_RESULT;
   s->store->release(s->store, &job);
 }
 

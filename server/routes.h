@@ -30,13 +30,13 @@ struct service {
 
 typedef void route_function(service *s, request *q, reply *r);
 
-/* What may be refused by headers alone; status stays 0 if nothing is. */
+/* What headers alone tell: refuses, or leaves status 0; or says that the answer will be slow. */
 typedef route_function admit_function;
 
 typedef struct route {
   const char *pattern; /* segments; {name} stands for any, which goes to request.argument */
   route_function *get, *post, *remove;
-  admit_function *admit; /* of post */
+  admit_function *admit; /* NULL: nothing to look at */
 } route;
 
 /* Ends with a pattern of NULL. */
@@ -47,7 +47,7 @@ http_app route_app(service *s);
 
 route_function route_health, route_ready, route_metrics, route_specification;
 route_function route_jobs, route_job, route_job_cancel, route_result, route_submit;
-admit_function admit_job;
+admit_function admit_job, admit_result;
 route_function route_materials, route_material;
 
 /* The kind whose jobs are posted to /v1/<path>, NULL if there is none. */

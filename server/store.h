@@ -17,7 +17,7 @@ typedef struct job_view {
   const job_kind *kind;
   double created, started, finished; /* s since 1970; NAN if not yet */
   double fraction;                   /* of a running job */
-  int position;                      /* JOB_QUEUED: jobs before it in the queue; else 0 */
+  int position;                      /* JOB_QUEUED: jobs before it in the queue; in a list -1 */
   int attempts;
   fault failure; /* JOB_FAILED, JOB_CANCELLED */
   verdict verdict;

@@ -363,7 +363,10 @@ static int memory_list(store *s, const job_filter *filter, job_view *out, int mo
   int count = 0;
   pthread_mutex_lock(&m->mutex);
   for (job *j = m->all.first; j && count < most; j = j->all.after)
-    if (passes(j, filter)) show(j, &out[count++]);
+    if (passes(j, filter)) {
+      show(j, &out[count]);
+      out[count++].position = -1;
+    }
   pthread_mutex_unlock(&m->mutex);
   return count;
 }

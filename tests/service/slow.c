@@ -229,6 +229,50 @@ static void crowd(void) {
   check(closed == CROWD, "all 60 were told 408 (%d)", closed);
 }
 
+/* Documents of megabytes are read beside the threads that answer others, and to the end. */
+static void large_documents(void) {
+  static const char *const flags[] = {"--body-limit", "8MiB", NULL};
+  wire senders[4];
+  service *s = trial_open(flags);
+  port = service_port(s);
+  char *large = malloc(HUGE_BODY);
+  memset(large, 'a', HUGE_BODY);
+  const char *opening = "{\"bytes\": 600000, \"note\": \"";
+  memcpy(large, opening, strlen(opening));
+  memcpy(large + HUGE_BODY - 2, "\"}", 2);
+  for (int i = 0; i < 4; i++) {
+    wire_open(&senders[i], port, 30);
+    wire_text(&senders[i], HEADERS "Content-Length: 8388608\r\n\r\n");
+    wire_send(&senders[i], large, HUGE_BODY);
+  }
+  double worst = 0;
+  for (int i = 0; i < 50; i++) {
+    double began = clock_steady();
+    answer a = ask(port, "GET", "/healthz", NULL, NULL);
+    double took = clock_steady() - began;
+    if (a.status != 200 || took > worst) worst = took;
+    answer_free(&a);
+  }
+  check(worst < 0.1, "/healthz while four documents of 8 MB are read: slowest %.4f s", worst);
+  char location[128], rows[160];
+  for (int i = 0; i < 4; i++) {
+    answer a;
+    wire_read(&senders[i], &a, false);
+    check(a.status == 200 && a.body.length > 600000, "document %d is answered (%d)", i + 1,
+          a.status);
+    answer_header(&a, "Location", location, sizeof location);
+    answer_free(&a);
+    wire_close(&senders[i]);
+  }
+  snprintf(rows, sizeof rows, "%s/result", location);
+  answer a = ask(port, "GET", rows, "Accept: text/csv\r\n", NULL);
+  check(a.status == 200 && a.body.length > 0 && strncmp(a.body.bytes, "sum", 3) == 0,
+        "rows of a large result are written beside as well");
+  answer_free(&a);
+  free(large);
+  service_close(s);
+}
+
 int main(void) {
   static const char *const flags[] = {"--header-deadline",
                                       "1",
@@ -251,6 +295,7 @@ int main(void) {
   hesitant();
   crowd();
   service_close(s);
+  large_documents();
   s = trial_open(quick);
   port = service_port(s);
   slow_reader();
