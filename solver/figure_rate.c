@@ -4,11 +4,12 @@
    Fastest: g(p) = (v(p + w) - v(p)) / w over the starts p of a window of length w. Starts are
    remembered until the end of their window comes by; both values are exact (of the step's own
    interpolant), only the choice of p is discrete: the samples of each step, at least w/64 apart,
-   and both sides of every change of stage. Where g has a maximum between starts, the parabola
-   through three of them gives it. */
+   and both sides of every change of stage. Where g has a maximum between starts, parabolas through
+   three of them give it: to 2e-4 of the value where the course is smooth, to 1e-3 at a corner
+   inside a stage, exactly at a corner between stages. */
 #include "figure_kit.h"
 
-enum { WINDOW_PARTS = 64, MOST_STARTS = 208 };
+enum { WINDOW_PARTS = 64, MOST_STARTS = 208, SMOOTH = 4 };
 
 #define WINDOW_FALLING 1.0  /* s: common practice for the cooling rate in a quench */
 #define WINDOW_RISING  60.0 /* s: common practice for heating rates, told in K/min or K/h */
@@ -28,7 +29,7 @@ typedef struct state {
   start_of_window ring[MOST_STARTS];
   start_of_window passed; /* the last that left the ring; t is NAN if none */
   int chain;              /* how many of `recent` stand on one smooth stretch, newest last */
-  gain recent[3], best;
+  gain recent[SMOOTH], best;
   double previous, left, left_rate; /* of the mean between two levels */
   double value, sensitivity;
 } state;
@@ -105,23 +106,31 @@ static void better(state *x, gain g) {
   if (isnan(x->best.value) || g.value > x->best.value) x->best = g;
 }
 
-/* The vertex of the parabola through the last three gains, if it lies among them. */
+/* Top of the parabola through three gains, if it lies among them; else the largest of the three. */
+static gain top_of(const gain g[3]) {
+  double slope = (g[1].value - g[0].value) / (g[1].t - g[0].t);
+  double bend = ((g[2].value - g[1].value) / (g[2].t - g[1].t) - slope) / (g[2].t - g[0].t);
+  double t = 0.5 * (g[0].t + g[1].t - slope / bend);
+  if (bend < 0 && t > g[0].t && t < g[2].t)
+    return (gain){t, g[0].value + (t - g[0].t) * (slope + bend * (t - g[1].t))};
+  int best = g[1].value > g[0].value ? 1 : 0;
+  return g[2].value > g[best].value ? g[2] : g[best];
+}
+
+/* A maximum between starts. The lower of two parabolas: at a corner, or where a plateau begins, one
+ * of them overshoots. */
 static void try_between(state *x) {
-  const gain *a = &x->recent[0], *b = a + 1, *c = a + 2;
-  if (x->chain < 3 || !(b->value > a->value && b->value >= c->value)) return;
-  double slope = (b->value - a->value) / (b->t - a->t);
-  double bend = ((c->value - b->value) / (c->t - b->t) - slope) / (c->t - a->t);
-  double t = 0.5 * (a->t + b->t - slope / bend);
-  if (t > a->t && t < c->t)
-    better(x, (gain){t, a->value + (t - a->t) * (slope + bend * (t - b->t))});
+  const gain *g = x->recent;
+  if (x->chain < SMOOTH) return;
+  gain a = top_of(g), b = top_of(g + 1);
+  better(x, a.value < b.value ? a : b);
 }
 
 static void take(state *x, gain g, bool breaks) {
   if (breaks) x->chain = 0;
-  if (x->chain && g.t <= x->recent[2].t) return;
-  x->recent[0] = x->recent[1];
-  x->recent[1] = x->recent[2];
-  x->recent[2] = g;
+  if (x->chain && g.t <= x->recent[SMOOTH - 1].t) return;
+  for (int i = 0; i < SMOOTH - 1; i++) x->recent[i] = x->recent[i + 1];
+  x->recent[SMOOTH - 1] = g;
   x->chain++;
   better(x, g);
   try_between(x);
