@@ -132,7 +132,7 @@ static void add_rounded(buffer *b, double value, int exponent, int decimals, boo
                       ? value * power_of_ten[decimals]
                       : INFINITY;
   if (scaled < WHOLE_LIMIT) {
-    char text[NUMBER_BYTES], *stop;
+    char text[NUMBER_BYTES] = "", *stop;
     char *at = print_whole(text + sizeof text, (uint64_t)(scaled + 0.5), decimals, &stop);
     if (negative) *--at = '-';
     buffer_add(b, at, (size_t)(stop - at));
