@@ -67,7 +67,8 @@ static int distance(const char *a, const char *b) {
 
 const char *nearest_name(const char *name, const char *const *names) {
   const char *best = NULL;
-  int length = (int)strlen(name), least = length < 5 ? 2 : 1 + length / 3;
+  int length = (int)strnlen(name, LONGEST_NAME + 1), least = length < 5 ? 2 : 1 + length / 3;
+  if (length > LONGEST_NAME) return NULL;
   for (int i = 0; names[i]; i++) {
     int d = distance(name, names[i]);
     int longer = (int)strlen(names[i]) > length ? (int)strlen(names[i]) : length;

@@ -190,7 +190,8 @@ static unit parse_term(parse *p, int depth) {
     return term;
   }
   p->at += length;
-  multiply(&term, found, exponent(p));
+  bool plain = found == &units[0] || found == &units[1]; /* "5 10" is no quantity */
+  multiply(&term, found, plain ? 1 : exponent(p));
   return term;
 }
 
@@ -268,6 +269,7 @@ static const char *number_end(const char *text) {
 
 static void suggest(const char *text, dimension d, char *hint, size_t size) {
   unit u;
+  if (!size) return;
   double unused;
   for (size_t i = 0; i < sizeof meant / sizeof *meant; i++)
     if (!strcmp(text, meant[i][0]) && quantity_in_unit(1, meant[i][1], d, &unused) == UNIT_OK) {
