@@ -1,6 +1,7 @@
 /* commands.c: the table of commands, their help, and the way from arguments to one of them. */
 #include "command.h"
 
+#include "schema.h"
 #include "serve.h"
 
 #include <stdio.h>
@@ -28,6 +29,8 @@ const command commands[] = {
      "Standard output is one JSON document: the cost, or the problem with all "
      "faults.\n" EXIT_CODES},
     {"flags", "", 0, 0, 0, command_flags, "print every flag as a Markdown table", NULL},
+    {"schema", "", 0, 0, 0, command_schema,
+     "print the JSON Schemas of a case, as the specification has them", NULL},
     {"version", "", 0, 0, 0, command_version, "print the version", NULL},
     {"help", "[COMMAND]", 0, 1, 0, command_help, "print this, or the help of a command", NULL},
     {NULL},
