@@ -1,0 +1,111 @@
+/* reader.h: what the readers of a case share. Only server/read*.c, document.c and library.c include it: they are the
+   family that knows the JSON library. */
+#ifndef CORESOAK_READER_H
+#define CORESOAK_READER_H
+
+#include "document.h"
+#include "limits.h"
+#include "shape.h"
+
+#include <jansson.h>
+
+enum { LONGEST_PATH = 512, MOST_DEPTH = 32, MOST_ELEMENTS = 2000000 };
+
+/* The reading of one document. Every function that can meet a fault adds it at the current path and goes on. */
+typedef struct reader {
+  fault_list *faults;
+  const library *library;
+  document *document;     /* receives warnings */
+  arena *memory;          /* of the case */
+  heat_case *the_case;    /* being filled */
+  json_t *root;           /* the finished document: inputs and named series put in place */
+  char path[LONGEST_PATH];
+  size_t length;
+  bool no_memory;
+  bool in_library;        /* reading a file of the library */
+} reader;
+
+/* ---- the path (read_path.c) ---- */
+
+size_t path_push(reader *r, const char *member);   /* returns what path_pop takes */
+size_t path_push_index(reader *r, size_t index);
+void path_pop(reader *r, size_t length);
+
+/* A fault at the path, or at a member below it (NULL: none); got is rendered from the value (NULL: none). */
+void fault_here(reader *r, const json_t *got, const char *is, ...) __attribute__((format(printf, 3, 4)));
+void fault_at(reader *r, const char *member, const json_t *got, const char *is, ...)
+    __attribute__((format(printf, 4, 5)));
+
+/* A warning at the path. */
+void warn_here(reader *r, const char *is, ...) __attribute__((format(printf, 2, 3)));
+
+/* Memory of the case; NULL sets r->no_memory. */
+void *take(reader *r, size_t count, size_t size);
+
+/* Checks that a value is an object / array / string; adds a fault and returns false if not. */
+bool must_be_object(reader *r, const json_t *v);
+bool must_be_array(reader *r, const json_t *v, size_t most, const char *what);
+bool must_be_text(reader *r, const json_t *v);
+bool is_name(const char *text);
+
+/* ---- rows (read_object.c) ---- */
+
+/* Fills `out` from an object by the rows of one or two types (second may be NULL). Members by kinds that need names of
+   the case are read too; `skip` names members (NULL-terminated list) that the caller reads itself. */
+void read_object(reader *r, const json_t *object, const object_type *first, const object_type *second,
+                 const char *const *skip, void *out);
+/* Only the check of member names, and of exactly one member where the type is a union. */
+bool check_members(reader *r, const json_t *object, const object_type *first, const object_type *second);
+
+/* ---- values ---- */
+
+/* One quantity by its dimension; false after a fault. */
+bool read_quantity(reader *r, const json_t *v, dimension d, double *out);
+/* The same within the range of a row. */
+bool read_ranged(reader *r, const json_t *v, const parameter *row, dimension d, double *out);
+bool read_contact(reader *r, const json_t *v, double *out);
+bool read_table(reader *r, const json_t *v, dimension x, dimension y, bool strict, table *out);
+bool read_series(reader *r, const json_t *v, dimension d, double least, double most, series *out);
+bool read_coefficient(reader *r, const json_t *v, coefficient *out);
+bool read_curve(reader *r, const json_t *v, dimension d, bool positive, curve *out);
+void read_logs(reader *r, const json_t *logs);
+bool read_log_column(reader *r, const json_t *name, dimension d, series *out);
+
+/* ---- parts of a case ---- */
+
+int read_material_name(reader *r, const json_t *v); /* index, -1 after a fault */
+bool read_material(reader *r, const char *name, const json_t *object, material *out);
+void read_part(reader *r, const json_t *v);
+void read_points(reader *r, const json_t *v);
+bool read_location(reader *r, const json_t *v, location *out);
+void read_faces(reader *r, const json_t *v, faces *out);
+void read_start(reader *r, const json_t *v);
+void read_stages(reader *r, const json_t *v);
+void read_until(reader *r, const json_t *v, until *out);
+void read_figures(reader *r, const json_t *v);
+void read_output(reader *r, const json_t *v);
+void read_named_series(reader *r, const json_t *v);
+
+/* ---- names ---- */
+
+bool read_target(reader *r, const json_t *of, const json_t *in, target *out);
+bool read_place_name(reader *r, const char *text, const json_t *in, place *out, bool quiet);
+bool read_instant(reader *r, const json_t *v, instant *out);
+bool read_instants(reader *r, const json_t *v, int *count, instant **items);
+bool read_stage_set(reader *r, const json_t *v, stage_set *out);
+int read_face_name(reader *r, const json_t *v);
+int stage_named(const reader *r, const char *name);
+int layer_named(const reader *r, const char *name);
+
+/* ---- whole ---- */
+
+/* JSON bytes to a tree with the limits of depth, elements and characters; faults carry line and column. */
+json_t *parse_json(const char *bytes, size_t length, fault_list *faults);
+/* A copy of a document in which every {"input": NAME} and {"series": NAME} is put in place. */
+json_t *expand_document(reader *r, const json_t *given);
+/* Canonical text and hash of the finished case. */
+int finish_case(reader *r, document *d);
+/* Rules that concern more than one member. */
+void check_case(reader *r);
+
+#endif
