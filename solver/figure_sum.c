@@ -271,8 +271,11 @@ static const parameter maturity_parameters[] = {
                     "Temperature below which nothing is gained"),
 };
 
+/* The one value that is not in SI: degC.h is the unit in which the trade knows it. */
+#define SECONDS_PER_HOUR 3600.0
+
 static double maturity_rate(const figure *f, double temperature) {
-  return temperature > f->datum ? temperature - f->datum : 0;
+  return temperature > f->datum ? (temperature - f->datum) / SECONDS_PER_HOUR : 0;
 }
 
 SUM_FUNCTIONS(maturity)

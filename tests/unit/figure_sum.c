@@ -72,7 +72,7 @@ static double maturity_hours(double datum, int steps) {
   course_stage(&k, 302400, steps);
   f->datum = celsius(datum);
   cr_expect_eq(f->kind->dimension(f, &k.c), DIMENSION_MATURITY);
-  return course_run(&k, 0).value / 3600; /* K s inside */
+  return course_run(&k, 0).value;
 }
 
 /* Reference case R83: ASTM C1074 equations (Nurse-Saul) for a piecewise-linear temperature. */
@@ -98,7 +98,7 @@ Test(maturity, seven_days) {
   figure *f = course_figure(&k, "maturity");
   course_stage(&k, 604800, 3);
   f->datum = celsius(-10);
-  check_close(course_run(&k, 0).value / 3600, 5040, 1e-6);
+  check_close(course_run(&k, 0).value, 5040, 1e-6);
 }
 
 /* Reference case R83: Q = E/R = 5000 K, reference 23 degC. */
