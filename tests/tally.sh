@@ -16,7 +16,7 @@ check() {
   else
     failed=$((failed + 1))
     echo "FAIL  $check_name"
-    sed 's/^/        /' "$tally_log" | head -60
+    sed 's/^/        /' "$tally_log" | tail -40
   fi
 }
 

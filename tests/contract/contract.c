@@ -180,6 +180,7 @@ int main(int count, char **words) {
   library *materials = library_open(&faults);
   faults_free(&faults);
   verbose = cases == 1;
+  setvbuf(stdout, NULL, _IOLBF, 0);
   if (!materials || cases < 1) {
     printf("usage: contract [COUNT [FIRST_SEED]]\n0 passed, 1 failed\n");
     return 1;
