@@ -219,8 +219,9 @@ static void write_log(schema_writer *w, dimension d) {
       "2, \"items\": {\"type\": \"string\"}}, \"units\": {\"type\": \"array\", \"items\": "
       "{\"type\": [\"string\", \"null\"]}}, \"rows\": {\"type\": \"array\", \"minItems\": 1, "
       "\"maxItems\": %d, \"items\": {\"type\": \"array\", \"minItems\": 2, \"items\": {\"type\": "
-      "[\"number\", \"string\", \"null\"]}}}, \"started_at\": {\"type\": [\"number\", "
-      "\"string\"], \"description\": \"The time in the log at which the case starts\"}}, "
+      "[\"number\", \"string\"]}}}, \"started_at\": {\"type\": \"string\", \"format\": "
+      "\"date-time\", "
+      "\"description\": \"The time in the log at which the case starts\"}}, "
       "\"required\": [\"columns\", \"rows\"], \"additionalProperties\": false",
       LIMIT_TABLE_ROWS);
 }
