@@ -59,10 +59,13 @@ static int read_question(struct reader *r, void *json, document *d) {
   q->fails = (int)json_integer_value(json_object_get(json, "fails"));
   const json_t *tasks = json_object_get(json, "tasks");
   q->tasks = tasks ? (int)json_integer_value(tasks) : 1;
-  d->finished = json_dumps(json, JSON_COMPACT | JSON_SORT_KEYS);
-  d->finished_length = d->finished ? strlen(d->finished) : 0;
   d->question = q;
-  return 0;
+  char *finished = json_dumps(json, JSON_COMPACT | JSON_SORT_KEYS);
+  if (!finished) return -1;
+  d->finished_length = strlen(finished);
+  d->finished = arena_text(&d->memory, finished, d->finished_length);
+  free(finished);
+  return d->finished ? 0 : -1;
 }
 
 static int plan(const document *d) {
