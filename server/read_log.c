@@ -212,11 +212,7 @@ static bool column_values(reader *r, const log_view *l, size_t column, dimension
   size_t count = json_array_size(l->rows);
   double *x = take(r, count, sizeof(double)), *y = take(r, count, sizeof(double));
   log_facts unused = {0};
-  int faults = r->faults->found;
-  if (!x || !y || !log_times(r, l, x, &unused)) {
-    r->faults->found = faults; /* told once, by read_logs */
-    return false;
-  }
+  if (!x || !y || !log_times(r, l, x, &unused)) return false;
   bool good = true;
   for (size_t i = 0; i < count; i++) {
     const json_t *v = json_array_get(json_array_get(l->rows, i), column);
