@@ -21,7 +21,7 @@ static void observe_extreme(figure_run *r, const segment *s, int sign) {
   state *x = r->self;
   if (!figure_sees(r, s)) return;
   view v = figure_view(r, s);
-  extreme e = view_extreme(&v, sign);
+  extreme e = view_extreme(&v, sign, x->value);
   if (!x->begun || sign * (e.value - x->value) > 0) x->value = e.value;
   if (!x->begun || sign * (e.value - x->marked) > SAME_TEMPERATURE) {
     x->marked = e.value;

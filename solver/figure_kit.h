@@ -91,13 +91,13 @@ int view_crossings(const view *v, double previous, double level, int direction, 
 double root_between(double (*f)(const void *context, double t), const void *context, double a,
                     double b, double fa, double fb);
 
-/* Largest value (sign +1) or smallest (-1) near sample j: of the samples themselves, and of the
-   curve between the neighbours of j where a parabola through three samples says that there is more.
- */
+/* Largest value (sign +1) or smallest (-1) in the segment: of the samples, and of the curve around
+   the best of them where a parabola through three says that there is more, and that may beat
+   `beat` (NAN: anything does). */
 typedef struct extreme {
   double value, when;
 } extreme;
-extreme view_extreme(const view *v, int sign);
+extreme view_extreme(const view *v, int sign, double beat);
 
 /* ---- check ---- */
 

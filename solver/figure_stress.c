@@ -99,6 +99,8 @@ static const char *check(const figure *f, const heat_case *c, const char **membe
   *member = "kind";
   if (c->part.shape->dimensions != 1) return "is for plate, cylinder and sphere only";
   if (!one_material(&c->part)) return "is for a part of one material only";
+  *member = "expansion";
+  if (f->expansion.count > LIMIT_PIECES) return "has more pieces than are allowed";
   *member = "elastic_modulus";
   if (!positive(&f->elastic_modulus)) return "must be greater than 0";
   *member = "require";

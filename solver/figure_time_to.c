@@ -43,7 +43,7 @@ static void begin(figure_run *r) {
 static void reached(state *x, const view *v, double t) {
   x->found = true;
   x->when = t;
-  x->rate = view_rate(v, t);
+  x->rate = v->watched ? NAN : view_rate(v, t); /* of a sum: nothing per kelvin */
 }
 
 static void observe(figure_run *r, const segment *s) {

@@ -131,7 +131,7 @@ static double vertex(double before, double middle, double after) {
   return bend < 0 ? 0.5 * (before - after) / bend : NAN;
 }
 
-extreme view_extreme(const view *v, int sign) {
+extreme view_extreme(const view *v, int sign, double beat) {
   const segment *s = v->segment;
   double sample[SEGMENT_SAMPLES];
   int best = 0;
@@ -143,6 +143,8 @@ extreme view_extreme(const view *v, int sign) {
   extreme found = {sign * sample[best], segment_time(s, best)};
   if (!(s->t1 > s->t0)) return found;
   int middle = best == 0 ? 1 : best == SEGMENT_SAMPLES - 1 ? best - 1 : best;
+  double spread = sample[best] - fmin(sample[middle - 1], sample[middle + 1]);
+  if (spread <= SAME_TEMPERATURE || sample[best] + spread <= sign * beat) return found;
   double at = middle + vertex(sample[middle - 1], sample[middle], sample[middle + 1]);
   if (!(at > 0 && at < SEGMENT_SAMPLES - 1)) return found;
   extreme refined =
