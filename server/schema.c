@@ -177,7 +177,7 @@ static void write_object(schema_writer *w, const char *about, const object_type 
   buffer_text(w->b, ", \"properties\": {");
   schema_properties(w, common, &first);
   if (own) schema_properties(w, own, &first);
-  if (common == &case_type) schema_around_case(w);
+  schema_extra_members(w, common);
   buffer_text(w->b, "}, \"required\": [");
   first = true;
   write_required(w, common, &first);

@@ -79,7 +79,8 @@ bool schema_special(schema_writer *w, const object_type *t, const parameter *p) 
   return false;
 }
 
-void schema_around_case(schema_writer *w) {
+/* The members of a job document around its case. */
+static void around_case(schema_writer *w) {
   static const char time[] = "\"type\": \"string\", \"format\": \"date-time\"";
   buffer_text(
       w->b, ", \"kind\": {\"type\": \"string\", \"enum\": [\"solve\"], \"description\": \"Kind of "
@@ -92,4 +93,21 @@ void schema_around_case(schema_writer *w) {
                 "}, \"id\": {\"type\": \"string\", \"maxLength\": %d}}, "
                 "\"additionalProperties\": false}",
                 LIMIT_TEXT);
+}
+
+static void write_enthalpy(schema_writer *w) {
+  buffer_format(
+      w->b,
+      ", \"enthalpy\": {\"type\": \"object\", \"properties\": {\"table\": {\"type\": "
+      "\"array\", \"minItems\": 2, \"maxItems\": %d, \"items\": {\"type\": \"array\", "
+      "\"minItems\": 2, \"maxItems\": 2, \"items\": {\"type\": [\"number\", \"string\", "
+      "\"object\"]}}}}, \"required\": [\"table\"], \"additionalProperties\": false, "
+      "\"description\": \"Enthalpy in J/kg against temperature, in place of specific_heat "
+      "and latent_heat; two rows at one temperature are a latent heat\"}",
+      LIMIT_PIECES);
+}
+
+void schema_extra_members(schema_writer *w, const object_type *t) {
+  if (t == &case_type) around_case(w);
+  if (t == &material_type) write_enthalpy(w);
 }

@@ -60,7 +60,7 @@ void schema_properties(schema_writer *w, const object_type *t, bool *first);
    row. */
 bool schema_special(schema_writer *w, const object_type *t, const parameter *p);
 
-/* The members of a job document that stand around the case, each after a comma. */
-void schema_around_case(schema_writer *w);
+/* Members of a type that have no row, each after a comma: what stands around a case, enthalpy. */
+void schema_extra_members(schema_writer *w, const object_type *t);
 
 #endif
