@@ -135,13 +135,12 @@ extreme view_extreme(const view *v, int sign, double beat) {
   const segment *s = v->segment;
   double sample[SEGMENT_SAMPLES];
   int best = 0;
+  if (!(s->t1 > s->t0)) return (extreme){view_sample(v, 0), s->t0};
   for (int j = 0; j < SEGMENT_SAMPLES; j++) {
     sample[j] = sign * view_sample(v, j);
     if (sample[j] > sample[best]) best = j;
-    if (!(s->t1 > s->t0)) break;
   }
   extreme found = {sign * sample[best], segment_time(s, best)};
-  if (!(s->t1 > s->t0)) return found;
   int middle = best == 0 ? 1 : best == SEGMENT_SAMPLES - 1 ? best - 1 : best;
   double spread = sample[best] - fmin(sample[middle - 1], sample[middle + 1]);
   if (spread <= SAME_TEMPERATURE || sample[best] + spread <= sign * beat) return found;

@@ -90,7 +90,8 @@ Test(stress, solid_cylinder_with_a_parabola) {
   double s0 = 200e9 * 1.2e-5 * 100 / (4 * 0.7);
   bar_init(&b, 1, 12, 0, 0.1, parabola_round);
   bar_material(&b, 200e9, 1.2e-5, 0.3);
-  for (double r = 0; r <= 0.1; r += 0.01) {
+  for (int n = 0; n < 11; n++) {
+    double r = 0.01 * n;
     double q = r * r / 0.01;
     stress_state s = stress_at(&b.e, &b.s, b.temperature, r);
     check_close(s.component[0], -s0 * (1 - q), 20);
@@ -117,7 +118,8 @@ Test(stress, hollow_cylinder_with_steady_conduction) {
     bar b;
     bar_init(&b, 1, run ? 41 : 21, INNER, OUTER, logarithm);
     bar_material(&b, 200e9, 1.2e-5, 0.3);
-    for (double r = INNER; r < OUTER; r += 0.0029) {
+    for (int n = 0; n < 11; n++) {
+      double r = INNER + 0.0029 * n;
       stress_state s = stress_at(&b.e, &b.s, b.temperature, r);
       double l = log(OUTER / r), q = OUTER * OUTER / (r * r);
       double exact[3] = {k * (-l - c * (1 - q) * m), k * (1 - l - c * (1 + q) * m),
@@ -141,7 +143,8 @@ Test(stress, hollow_sphere_with_steady_conduction) {
   bar b;
   bar_init(&b, 2, 61, a, o, hyperbola);
   bar_material(&b, 200e9, 1.2e-5, 0.3);
-  for (double r = a; r < o; r += 0.0029) {
+  for (int n = 0; n < 11; n++) {
+    double r = a + 0.0029 * n;
     stress_state s = stress_at(&b.e, &b.s, b.temperature, r);
     double sum = (o * o + o * a + a * a), cube = a * a * o * o / (r * r * r);
     check_close(s.component[0], k * (a + o - sum / r + cube), 3e-5 * k * o);
@@ -228,7 +231,8 @@ Test(stress, rounds_are_in_equilibrium) {
     double axial = 0, d = 1e-6;
     bar_init(&b, power, 121, 0.02, 0.1, steep);
     bar_material(&b, 200e9, 1.2e-5, 0.3);
-    for (double r = 0.0203; r < 0.0999; r += 0.0013) {
+    for (int n = 0; n < 62; n++) {
+      double r = 0.0203 + 0.0013 * n;
       stress_state below = stress_at(&b.e, &b.s, b.temperature, r - d),
                    above = stress_at(&b.e, &b.s, b.temperature, r + d);
       stress_state here = stress_at(&b.e, &b.s, b.temperature, r);
@@ -239,8 +243,10 @@ Test(stress, rounds_are_in_equilibrium) {
       check_close(change, hoop, 1e-3 * 200e9 * 1.2e-5 * 900 * pow(r, power - 1));
     }
     if (power == 2) continue;
-    for (double r = 0.02 + 2e-5; r < 0.1; r += 4e-5)
+    for (int n = 0; n < 2000; n++) {
+      double r = 0.02 + 2e-5 + 4e-5 * n;
       axial += stress_at(&b.e, &b.s, b.temperature, r).component[2] * r * 4e-5;
+    }
     cr_expect(fabs(axial) < 1e-3 * 200e9 * 1.2e-5 * 900 * 0.1 * 0.005, "%g", axial);
   }
 }
@@ -249,7 +255,8 @@ Test(stress, thermal_strain_is_the_integral_of_the_coefficient) {
   bar b;
   bar_changing(&b);
   check_close(thermal_strain(&b.e.strain, celsius(20)), 0, 1e-18);
-  for (double t = -50; t <= 1200; t += 37) {
+  for (int n = 0; n < 34; n++) {
+    double t = -50 + 37 * n;
     double sum = 0, step = (t - 20) / 20000; /* midpoint rule: right to a step of the jumps */
     for (int i = 0; i < 20000; i++)
       sum += step * curve_value(&b.expansion, celsius(20 + (i + 0.5) * step));
@@ -268,9 +275,11 @@ Test(stress, two_nodes_at_one_place_count_once) {
   b.s.nodes = 22;
   bar_material(&a, 205e9, 1.25e-5, 0.3);
   bar_material(&b, 205e9, 1.25e-5, 0.3);
-  for (double x = 0; x <= 0.04; x += 0.003)
+  for (int n = 0; n < 14; n++) {
+    double x = 0.003 * n;
     cr_expect_eq(stress_at(&a.e, &a.s, a.temperature, x).component[0],
                  stress_at(&b.e, &b.s, b.temperature, x).component[0]);
+  }
 }
 
 /* ---- the figure ---- */
