@@ -41,7 +41,7 @@ static int open_socket(const struct addrinfo *a) {
 }
 
 static int port_of(int s) {
-  struct sockaddr_storage address;
+  struct sockaddr_storage address = {0};
   socklen_t size = sizeof address;
   if (getsockname(s, (struct sockaddr *)&address, &size) != 0) return 0;
   if (address.ss_family == AF_INET6)

@@ -77,7 +77,7 @@ static void worker_ended_job(void *self, const char *id, const job_view *job) {
 
 static bool open_parts(service *s, char *message, size_t size) {
   const options *o = &s->options;
-  for (int i = 0; routes[i].pattern && i < MOST_ROUTES; i++) s->patterns[i] = routes[i].pattern;
+  for (int i = 0; i < MOST_ROUTES && routes[i].pattern; i++) s->patterns[i] = routes[i].pattern;
   s->metrics = metrics_new(s->kinds, s->patterns);
   s->store = store_memory_open(o->queue, o->kept, KEPT_BYTES);
   snprintf(message, size, "out of memory");

@@ -383,9 +383,8 @@ static void memory_count(store *s, long by_state[JOB_STATES], double *oldest_que
 
 static void memory_close(store *s) {
   store_memory *m = (store_memory *)s;
-  while (m->all.first) {
-    job *j = m->all.first;
-    take_out(&m->all, j, ALL);
+  for (job *j = m->all.first, *next; j; j = next) {
+    next = j->all.after;
     let_go(j);
   }
   pthread_mutex_destroy(&m->mutex);
