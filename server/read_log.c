@@ -217,14 +217,14 @@ static bool column_values(reader *r, const log_view *l, size_t column, dimension
   for (size_t i = 0; i < count; i++) {
     const json_t *v = json_array_get(json_array_get(l->rows, i), column);
     const char *unit = unit_of(l, column);
-    size_t before = path_push_index(r, i), inner = path_push_index(r, column);
+    size_t before = path_push_index(r, i);
+    path_push_index(r, column);
     if (unit && json_is_number(v) && quantity_in_unit(json_number_value(v), unit, d, &y[i]) != UNIT_OK) {
       fault_here(r, v, "the column's unit %s does not fit a %s", unit, dimension_name(d));
       good = false;
     } else if (!(unit && json_is_number(v)) && !read_quantity(r, v, d, &y[i])) {
       good = false;
     }
-    (void)inner;
     path_pop(r, before);
     if (!good) break;
   }

@@ -23,6 +23,7 @@ typedef struct reader {
   size_t length;
   bool no_memory;
   bool in_library;        /* reading a file of the library */
+  bool shapeless;         /* the shape is unknown: its faces and coordinates cannot be judged */
 } reader;
 
 /* ---- the path (read_path.c) ---- */
