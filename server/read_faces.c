@@ -22,8 +22,8 @@ int read_face_name(reader *r, const json_t *v) {
   if (face >= 0)
     fault_here(r, v, "a solid %s has no face \"%s\"", s->name, name);
   else
-    fault_here(r, v, "unknown face of a %s (%s, %s)%s%s%s", s->name, s->faces[0], s->faces[1], near ? "; did you mean \"" : "",
-               near ? near : "", near ? "\"?" : "");
+    fault_here(r, v, "unknown face of a %s (%s, %s)%s%s%s", s->name, s->faces[0], s->faces[1],
+               near ? "; did you mean \"" : "", near ? near : "", near ? "\"?" : "");
   return -1;
 }
 
@@ -72,23 +72,28 @@ static void read_condition(reader *r, const json_t *v, face_condition *out) {
   if (r->faults->found != faults) return;
   int alone = (f.temperature != NULL) + (f.furnace != NULL) + f.insulated;
   if (alone > 1 || (alone && parts_given(&f))) {
-    fault_here(r, NULL, "temperature, furnace and insulated each stand alone; only flux, convection and radiation add up");
+    fault_here(r, NULL,
+               "temperature, furnace and insulated each stand alone; only flux, convection and "
+               "radiation add up");
   } else if (f.temperature) {
     out->kind = FACE_PRESCRIBED;
     out->temperature = *f.temperature;
   } else if (f.furnace) {
     by_furnace(f.furnace, out);
-    if (!out->has_convection && !out->has_radiation) fault_at(r, "furnace", NULL, "must have h or emissivity");
+    if (!out->has_convection && !out->has_radiation)
+      fault_at(r, "furnace", NULL, "must have h or emissivity");
   } else if (parts_given(&f)) {
     by_parts(&f, out);
   } else if (!f.insulated) {
-    fault_here(r, v, "must have temperature, flux, convection, radiation, furnace or insulated: true");
+    fault_here(r, v,
+               "must have temperature, flux, convection, radiation, furnace or insulated: true");
   }
 }
 
 void read_faces(reader *r, const json_t *v, faces *out) {
   const shape *s = r->the_case->part.shape;
-  bool solid = s->power && r->the_case->part.layers.count && !s->hollow(&r->the_case->part), named[MOST_FACES] = {false};
+  bool solid = s->power && r->the_case->part.layers.count && !s->hollow(&r->the_case->part),
+       named[MOST_FACES] = {false};
   face_condition all = {.kind = FACE_INSULATED, .assumed = true};
   memset(out, 0, sizeof *out);
   while (s->faces[out->count]) out->count++;

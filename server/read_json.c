@@ -1,4 +1,5 @@
-/* read_json.c: bytes to a JSON tree, refused early where the tree would be too deep or too large. */
+/* read_json.c: bytes to a JSON tree, refused early where the tree would be too deep or too large.
+ */
 #include "reader.h"
 
 #include <stdio.h>
@@ -87,7 +88,8 @@ json_t *parse_json(const char *bytes, size_t length, fault_list *faults) {
     faults->no_memory = true;
     return NULL;
   }
-  faults_add(faults, "", NULL, "not JSON: %s (line %d, column %d)", error.text, error.line, error.column);
+  faults_add(faults, "", NULL, "not JSON: %s (line %d, column %d)", error.text, error.line,
+             error.column);
   faults->status = 400;
   return NULL;
 }

@@ -1,4 +1,5 @@
-/* read_log.c: furnace logs: columns, times in a unit or as RFC 3339, and what advice needs to know of them. */
+/* read_log.c: furnace logs: columns, times in a unit or as RFC 3339, and what advice needs to know
+ * of them. */
 #include "reader.h"
 
 #include <ctype.h>
@@ -20,17 +21,21 @@ static long days_of(int year, int month, int day) {
   static const int before[] = {0, 31, 59, 90, 120, 151, 181, 212, 243, 273, 304, 334};
   bool leap = (year % 4 == 0 && year % 100 != 0) || year % 400 == 0;
   long leaps = (year - 1) / 4 - (year - 1) / 100 + (year - 1) / 400;
-  return 365L * (year - 1970) + leaps - (1969 / 4 - 1969 / 100 + 1969 / 400) + before[month - 1] + (leap && month > 2) + day - 1;
+  return 365L * (year - 1970) + leaps - (1969 / 4 - 1969 / 100 + 1969 / 400) + before[month - 1] +
+         (leap && month > 2) + day - 1;
 }
 
 /* "2026-03-01T06:15:00+01:00" to s since 1970; false if it is not RFC 3339 with an offset. */
 static bool rfc3339(const char *t, double *out) {
   int year, month, day, hour, minute, second, oh, om;
-  if (strlen(t) < 20 || !digits(t, 4, &year) || t[4] != '-' || !digits(t + 5, 2, &month) || t[7] != '-' ||
-      !digits(t + 8, 2, &day) || (t[10] != 'T' && t[10] != 't' && t[10] != ' ') || !digits(t + 11, 2, &hour) ||
-      t[13] != ':' || !digits(t + 14, 2, &minute) || t[16] != ':' || !digits(t + 17, 2, &second))
+  if (strlen(t) < 20 || !digits(t, 4, &year) || t[4] != '-' || !digits(t + 5, 2, &month) ||
+      t[7] != '-' || !digits(t + 8, 2, &day) || (t[10] != 'T' && t[10] != 't' && t[10] != ' ') ||
+      !digits(t + 11, 2, &hour) || t[13] != ':' || !digits(t + 14, 2, &minute) || t[16] != ':' ||
+      !digits(t + 17, 2, &second))
     return false;
-  if (year < 1 || month < 1 || month > 12 || day < 1 || day > 31 || hour > 23 || minute > 59 || second > 60) return false;
+  if (year < 1 || month < 1 || month > 12 || day < 1 || day > 31 || hour > 23 || minute > 59 ||
+      second > 60)
+    return false;
   const char *p = t + 19;
   double fraction = 0, place = 0.1;
   if (*p == '.')
@@ -39,11 +44,13 @@ static bool rfc3339(const char *t, double *out) {
   if (*p == 'Z' || *p == 'z') {
     p++;
   } else {
-    if ((*p != '+' && *p != '-') || !digits(p + 1, 2, &oh) || p[3] != ':' || !digits(p + 4, 2, &om)) return false;
+    if ((*p != '+' && *p != '-') || !digits(p + 1, 2, &oh) || p[3] != ':' || !digits(p + 4, 2, &om))
+      return false;
     offset = (*p == '-' ? -1 : 1) * (oh * 3600.0 + om * 60.0);
     p += 6;
   }
-  *out = days_of(year, month, day) * 86400.0 + hour * 3600.0 + minute * 60.0 + second + fraction - offset;
+  *out = days_of(year, month, day) * 86400.0 + hour * 3600.0 + minute * 60.0 + second + fraction -
+         offset;
   return *p == 0;
 }
 
@@ -64,7 +71,8 @@ static bool view_log(reader *r, const json_t *v, log_view *out) {
     for (int i = 0; members[i]; i++) known = known || !strcmp(members[i], name);
     if (known) continue;
     const char *near = nearest_name(name, members);
-    fault_at(r, name, NULL, "unknown member of a log%s%s%s", near ? "; did you mean \"" : "", near ? near : "", near ? "\"?" : "");
+    fault_at(r, name, NULL, "unknown member of a log%s%s%s", near ? "; did you mean \"" : "",
+             near ? near : "", near ? "\"?" : "");
     good = false;
   }
   *out = (log_view){.columns = json_object_get(v, "columns"),
@@ -72,7 +80,8 @@ static bool view_log(reader *r, const json_t *v, log_view *out) {
                     .rows = json_object_get(v, "rows"),
                     .started = json_object_get(v, "started_at")};
   if (!json_is_array(out->columns) || json_array_size(out->columns) < 2) {
-    fault_at(r, "columns", out->columns, "must name at least two columns, the first of them the time");
+    fault_at(r, "columns", out->columns,
+             "must name at least two columns, the first of them the time");
     good = false;
   }
   if (!json_is_array(out->rows) || !json_array_size(out->rows)) {
@@ -80,10 +89,12 @@ static bool view_log(reader *r, const json_t *v, log_view *out) {
     good = false;
   }
   if (good && json_array_size(out->rows) > LIMIT_TABLE_ROWS) {
-    fault_at(r, "rows", NULL, "has %zu rows; the limit is %d", json_array_size(out->rows), LIMIT_TABLE_ROWS);
+    fault_at(r, "rows", NULL, "has %zu rows; the limit is %d", json_array_size(out->rows),
+             LIMIT_TABLE_ROWS);
     good = false;
   }
-  if (out->units && (!json_is_array(out->units) || (good && json_array_size(out->units) != json_array_size(out->columns)))) {
+  if (out->units && (!json_is_array(out->units) ||
+                     (good && json_array_size(out->units) != json_array_size(out->columns)))) {
     fault_at(r, "units", out->units, "must name one unit for each column");
     good = false;
   }
@@ -102,7 +113,9 @@ static bool row_time(reader *r, const log_view *l, const json_t *v, bool *dated,
     return true;
   }
   const char *unit = unit_of(l, 0);
-  if (json_is_number(v) && unit && quantity_in_unit(json_number_value(v), unit, DIMENSION_TIME, out) == UNIT_OK) return true;
+  if (json_is_number(v) && unit &&
+      quantity_in_unit(json_number_value(v), unit, DIMENSION_TIME, out) == UNIT_OK)
+    return true;
   if (json_is_number(v) && unit) {
     fault_here(r, v, "the unit of the time column must be a unit of time");
     return false;
@@ -111,7 +124,9 @@ static bool row_time(reader *r, const log_view *l, const json_t *v, bool *dated,
     *out = json_number_value(v);
     return true;
   }
-  fault_here(r, v, "must be a number or a time as RFC 3339 with an offset, such as 2026-03-01T06:15:00+01:00");
+  fault_here(
+      r, v,
+      "must be a number or a time as RFC 3339 with an offset, such as 2026-03-01T06:15:00+01:00");
   return false;
 }
 
@@ -185,7 +200,8 @@ void read_logs(reader *r, const json_t *logs) {
   }
 }
 
-static const json_t *find_log(reader *r, const json_t *name, char *log, size_t size, const char **column) {
+static const json_t *find_log(reader *r, const json_t *name, char *log, size_t size,
+                              const char **column) {
   const char *text = json_string_value(name), *slash = text ? strchr(text, '/') : NULL;
   if (!slash || (size_t)(slash - text) >= size) {
     fault_here(r, name, "must be \"LOG/COLUMN\"");
@@ -219,7 +235,8 @@ static bool column_values(reader *r, const log_view *l, size_t column, dimension
     const char *unit = unit_of(l, column);
     size_t before = path_push_index(r, i);
     path_push_index(r, column);
-    if (unit && json_is_number(v) && quantity_in_unit(json_number_value(v), unit, d, &y[i]) != UNIT_OK) {
+    if (unit && json_is_number(v) &&
+        quantity_in_unit(json_number_value(v), unit, d, &y[i]) != UNIT_OK) {
       fault_here(r, v, "the column's unit %s does not fit a %s", unit, dimension_name(d));
       good = false;
     } else if (!(unit && json_is_number(v)) && !read_quantity(r, v, d, &y[i])) {
@@ -242,7 +259,8 @@ bool read_log_column(reader *r, const json_t *name, dimension d, series *out) {
                 .rows = json_object_get(found, "rows"),
                 .started = json_object_get(found, "started_at")};
   bool known = false;
-  for (int i = 0; i < r->the_case->logs.count; i++) known = known || !strcmp(r->the_case->logs.items[i].name, log);
+  for (int i = 0; i < r->the_case->logs.count; i++)
+    known = known || !strcmp(r->the_case->logs.items[i].name, log);
   if (!known) return false; /* its faults stand already */
   int column = column_named(&l, wanted);
   if (column < 0) {

@@ -1,4 +1,5 @@
-/* read_material.c: properties, latent heats, enthalpy tables; materials of the library and of the case. */
+/* read_material.c: properties, latent heats, enthalpy tables; materials of the library and of the
+ * case. */
 #include "reader.h"
 
 #include "physics.h"
@@ -25,7 +26,9 @@ static bool table_to_pieces(reader *r, const table *t, curve *out) {
   for (int i = 0; i + 1 < t->count; i++) {
     if (t->x[i] == t->x[i + 1]) continue;
     double slope = (t->y[i + 1] - t->y[i]) / (t->x[i + 1] - t->x[i]);
-    p[n++] = (piece){.from = t->x[i], .to = t->x[i + 1], .poly = {t->y[i] - slope * (t->x[i] - ZERO_CELSIUS), slope}};
+    p[n++] = (piece){.from = t->x[i],
+                     .to = t->x[i + 1],
+                     .poly = {t->y[i] - slope * (t->x[i] - ZERO_CELSIUS), slope}};
   }
   *out = (curve){.count = n, .pieces = p};
   return n > 0;
@@ -49,13 +52,39 @@ static bool tabled(reader *r, const json_t *rows, dimension d, bool positive, cu
 }
 
 static bool read_piece(reader *r, const json_t *v, piece *p) {
-  static const parameter rows[] = {
-      {.name = "from", .kind = VALUE_QUANTITY, .dimension = DIMENSION_TEMPERATURE, .offset = offsetof(piece, from), .flags = PARAMETER_REQUIRED, .least = 0, .most = INFINITY, .fallback = NAN},
-      {.name = "to", .kind = VALUE_QUANTITY, .dimension = DIMENSION_TEMPERATURE, .offset = offsetof(piece, to), .flags = PARAMETER_REQUIRED, .least = 0, .most = INFINITY, .fallback = NAN},
-      {.name = "poly", .kind = VALUE_LIST},
-      {.name = "rational", .kind = VALUE_QUANTITY, .dimension = DIMENSION_NUMBER, .offset = offsetof(piece, rational), .least = -INFINITY, .most = INFINITY, .fallback = 0},
-      {.name = "pole", .kind = VALUE_QUANTITY, .dimension = DIMENSION_NUMBER, .offset = offsetof(piece, pole), .least = -INFINITY, .most = INFINITY, .fallback = 0}};
-  static const object_type type = {.name = "piece", .size = sizeof(piece), .parameters = rows, .count = COUNT_OF(rows)};
+  static const parameter rows[] = {{.name = "from",
+                                    .kind = VALUE_QUANTITY,
+                                    .dimension = DIMENSION_TEMPERATURE,
+                                    .offset = offsetof(piece, from),
+                                    .flags = PARAMETER_REQUIRED,
+                                    .least = 0,
+                                    .most = INFINITY,
+                                    .fallback = NAN},
+                                   {.name = "to",
+                                    .kind = VALUE_QUANTITY,
+                                    .dimension = DIMENSION_TEMPERATURE,
+                                    .offset = offsetof(piece, to),
+                                    .flags = PARAMETER_REQUIRED,
+                                    .least = 0,
+                                    .most = INFINITY,
+                                    .fallback = NAN},
+                                   {.name = "poly", .kind = VALUE_LIST},
+                                   {.name = "rational",
+                                    .kind = VALUE_QUANTITY,
+                                    .dimension = DIMENSION_NUMBER,
+                                    .offset = offsetof(piece, rational),
+                                    .least = -INFINITY,
+                                    .most = INFINITY,
+                                    .fallback = 0},
+                                   {.name = "pole",
+                                    .kind = VALUE_QUANTITY,
+                                    .dimension = DIMENSION_NUMBER,
+                                    .offset = offsetof(piece, pole),
+                                    .least = -INFINITY,
+                                    .most = INFINITY,
+                                    .fallback = 0}};
+  static const object_type type = {
+      .name = "piece", .size = sizeof(piece), .parameters = rows, .count = COUNT_OF(rows)};
   static const char *const skip[] = {"poly", NULL};
   if (!must_be_object(r, v)) return false;
   int faults = r->faults->found;
@@ -66,11 +95,13 @@ static bool read_piece(reader *r, const json_t *v, piece *p) {
     return false;
   }
   for (size_t i = 0; i < json_array_size(poly); i++) {
-    if (!json_is_number(json_array_get(poly, i))) fault_at(r, "poly", json_array_get(poly, i), "must be numbers");
+    if (!json_is_number(json_array_get(poly, i)))
+      fault_at(r, "poly", json_array_get(poly, i), "must be numbers");
     p->poly[i] = json_number_value(json_array_get(poly, i));
   }
   if (p->from >= p->to) fault_at(r, "to", json_object_get(v, "to"), "must be above from");
-  bool pole_inside = p->rational != 0 && p->pole + ZERO_CELSIUS >= p->from && p->pole + ZERO_CELSIUS <= p->to;
+  bool pole_inside =
+      p->rational != 0 && p->pole + ZERO_CELSIUS >= p->from && p->pole + ZERO_CELSIUS <= p->to;
   if (pole_inside) fault_at(r, "pole", json_object_get(v, "pole"), "must lie outside of the piece");
   return r->faults->found == faults;
 }
@@ -104,13 +135,15 @@ static bool all_positive(reader *r, const curve *c) {
       curve alone = {.count = 1, .pieces = p};
       double t = p->from + (p->to - p->from) * k / 32;
       if (curve_value(&alone, t) > 0) continue;
-      fault_here(r, NULL, "must be greater than 0; at %.6g degC it is %.6g", t - ZERO_CELSIUS, curve_value(&alone, t));
+      fault_here(r, NULL, "must be greater than 0; at %.6g degC it is %.6g", t - ZERO_CELSIUS,
+                 curve_value(&alone, t));
       return false;
     }
   return true;
 }
 
-static bool read_shape_of_curve(reader *r, const json_t *v, dimension d, bool positive, curve *out) {
+static bool read_shape_of_curve(reader *r, const json_t *v, dimension d, bool positive,
+                                curve *out) {
   static const char *const names[] = {"table", "pieces", NULL};
   static const parameter row = {.flags = PARAMETER_ABOVE, .least = 0, .most = INFINITY};
   static const parameter any = {.least = -INFINITY, .most = INFINITY};
@@ -128,14 +161,15 @@ static bool read_shape_of_curve(reader *r, const json_t *v, dimension d, bool po
     return good;
   }
   const char *near = only ? nearest_name(only, names) : NULL;
-  fault_here(r, v, "must be a number, {\"table\": [[T, value], ...]} or {\"pieces\": [...]}%s%s%s", near ? "; did you mean \"" : "",
-             near ? near : "", near ? "\"?" : "");
+  fault_here(r, v, "must be a number, {\"table\": [[T, value], ...]} or {\"pieces\": [...]}%s%s%s",
+             near ? "; did you mean \"" : "", near ? near : "", near ? "\"?" : "");
   return false;
 }
 
 bool read_curve(reader *r, const json_t *v, dimension d, bool positive, curve *out) {
   *out = (curve){0};
-  if (read_shape_of_curve(r, v, d, positive, out) && (!positive || all_positive(r, out))) return true;
+  if (read_shape_of_curve(r, v, d, positive, out) && (!positive || all_positive(r, out)))
+    return true;
   one_piece(r, 1, out);
   return false;
 }
@@ -169,7 +203,8 @@ static bool read_enthalpy(reader *r, const json_t *v, material *m) {
       fault_here(r, NULL, "has too many jumps; the limit is %d", LIMIT_LATENT_HEATS);
       good = false;
     } else if (t.x[i] == t.x[i + 1]) {
-      m->latent.items[m->latent.count++] = (latent_heat){.heat = rise, .from = t.x[i], .to = t.x[i]};
+      m->latent.items[m->latent.count++] =
+          (latent_heat){.heat = rise, .from = t.x[i], .to = t.x[i]};
     } else {
       p[n++] = (piece){.from = t.x[i], .to = t.x[i + 1], .poly = {rise / (t.x[i + 1] - t.x[i])}};
     }
@@ -191,23 +226,48 @@ typedef struct library_members {
   double valid_from, valid_to;
 } library_members;
 
-static const parameter valid_rows[] = {
-    {.name = "from", .kind = VALUE_QUANTITY, .dimension = DIMENSION_TEMPERATURE, .offset = offsetof(library_members, valid_from), .flags = PARAMETER_REQUIRED, .least = 0, .most = INFINITY},
-    {.name = "to", .kind = VALUE_QUANTITY, .dimension = DIMENSION_TEMPERATURE, .offset = offsetof(library_members, valid_to), .flags = PARAMETER_REQUIRED, .least = 0, .most = INFINITY}};
-static const object_type valid_type = {.name = "valid", .size = sizeof(library_members), .parameters = valid_rows, .count = 2};
+static const parameter valid_rows[] = {{.name = "from",
+                                        .kind = VALUE_QUANTITY,
+                                        .dimension = DIMENSION_TEMPERATURE,
+                                        .offset = offsetof(library_members, valid_from),
+                                        .flags = PARAMETER_REQUIRED,
+                                        .least = 0,
+                                        .most = INFINITY},
+                                       {.name = "to",
+                                        .kind = VALUE_QUANTITY,
+                                        .dimension = DIMENSION_TEMPERATURE,
+                                        .offset = offsetof(library_members, valid_to),
+                                        .flags = PARAMETER_REQUIRED,
+                                        .least = 0,
+                                        .most = INFINITY}};
+static const object_type valid_type = {
+    .name = "valid", .size = sizeof(library_members), .parameters = valid_rows, .count = 2};
 
-static const parameter extra_rows[] = {{.name = "title", .kind = VALUE_TEXT, .offset = offsetof(material, title), .flags = PARAMETER_REQUIRED},
-                                       {.name = "source", .kind = VALUE_TEXT, .offset = offsetof(material, source), .flags = PARAMETER_REQUIRED},
-                                       {.name = "revision", .kind = VALUE_TEXT, .offset = offsetof(material, revision), .flags = PARAMETER_REQUIRED},
+static const parameter extra_rows[] = {{.name = "title",
+                                        .kind = VALUE_TEXT,
+                                        .offset = offsetof(material, title),
+                                        .flags = PARAMETER_REQUIRED},
+                                       {.name = "source",
+                                        .kind = VALUE_TEXT,
+                                        .offset = offsetof(material, source),
+                                        .flags = PARAMETER_REQUIRED},
+                                       {.name = "revision",
+                                        .kind = VALUE_TEXT,
+                                        .offset = offsetof(material, revision),
+                                        .flags = PARAMETER_REQUIRED},
                                        {.name = "valid", .kind = VALUE_OBJECT},
                                        {.name = "traits", .kind = VALUE_LIST},
                                        {.name = "note", .kind = VALUE_TEXT},
                                        {.name = "enthalpy", .kind = VALUE_CURVE}};
-static const object_type extra_type = {.name = "material", .size = sizeof(material), .parameters = extra_rows, .count = COUNT_OF(extra_rows)};
+static const object_type extra_type = {.name = "material",
+                                       .size = sizeof(material),
+                                       .parameters = extra_rows,
+                                       .count = COUNT_OF(extra_rows)};
 
 /* Of the case's own materials: only enthalpy stands beside the rows. */
 static const parameter enthalpy_rows[] = {{.name = "enthalpy", .kind = VALUE_CURVE}};
-static const object_type enthalpy_type = {.name = "material", .size = sizeof(material), .parameters = enthalpy_rows, .count = 1};
+static const object_type enthalpy_type = {
+    .name = "material", .size = sizeof(material), .parameters = enthalpy_rows, .count = 1};
 
 static void read_traits(reader *r, const json_t *v, unsigned *out) {
   static const char *const names[] = {"metal", "heating_only", "liquid", "melts", NULL};
@@ -252,7 +312,8 @@ static void check_latent(reader *r, const json_t *list, material *m) {
     const latent_heat *l = &m->latent.items[i];
     size_t before = path_push_index(r, (size_t)i);
     if (isfinite(l->from) && isfinite(l->to) && l->to < l->from)
-      fault_at(r, "to", json_object_get(json_array_get(list, (size_t)i), "to"), "must not be below from");
+      fault_at(r, "to", json_object_get(json_array_get(list, (size_t)i), "to"),
+               "must not be below from");
     path_pop(r, before);
   }
 }
@@ -268,7 +329,8 @@ bool read_material(reader *r, const char *name, const json_t *object, material *
   if (!must_be_object(r, object)) return false;
   int faults = r->faults->found;
   read_object(r, object, &material_type, r->in_library ? &extra_type : &enthalpy_type, skip, out);
-  const json_t *heat = json_object_get(object, "specific_heat"), *enthalpy = json_object_get(object, "enthalpy");
+  const json_t *heat = json_object_get(object, "specific_heat"),
+               *enthalpy = json_object_get(object, "enthalpy");
   const json_t *latent = json_object_get(object, "latent_heat");
   if (!heat == !enthalpy) fault_here(r, NULL, "must have either specific_heat or enthalpy");
   if (enthalpy && latent) fault_at(r, "latent_heat", NULL, "stands in the enthalpy table already");
@@ -303,11 +365,13 @@ static void unknown_material(reader *r, const json_t *v, const char *name) {
   json_t *value;
   const char *own_names[LIMIT_MATERIALS + 1];
   int count = 0;
-  json_object_foreach((json_t *)own, key, value) if (count < LIMIT_MATERIALS) own_names[count++] = key;
+  json_object_foreach((json_t *)own, key, value) if (count < LIMIT_MATERIALS) own_names[count++] =
+      key;
   own_names[count] = NULL;
   const char *near_own = nearest_name(name, own_names);
   if (near_own) near = near_own;
-  fault_here(r, v, "unknown material%s%s%s", near ? "; did you mean \"" : "", near ? near : "", near ? "\"?" : "");
+  fault_here(r, v, "unknown material%s%s%s", near ? "; did you mean \"" : "", near ? near : "",
+             near ? "\"?" : "");
 }
 
 int read_material_name(reader *r, const json_t *v) {
@@ -320,7 +384,8 @@ int read_material_name(reader *r, const json_t *v) {
   }
   int used = already_used(c, name);
   if (used >= 0) return used;
-  if (!c->materials.items && !(c->materials.items = take(r, LIMIT_MATERIALS, sizeof(material)))) return -1;
+  if (!c->materials.items && !(c->materials.items = take(r, LIMIT_MATERIALS, sizeof(material))))
+    return -1;
   if (c->materials.count == LIMIT_MATERIALS) {
     fault_here(r, v, "more than %d materials", LIMIT_MATERIALS);
     return -1;

@@ -19,7 +19,8 @@ static int names_of(const object_type *t, const char **names, int count) {
   return count;
 }
 
-static void unknown_member(reader *r, const char *name, const object_type *first, const object_type *second) {
+static void unknown_member(reader *r, const char *name, const object_type *first,
+                           const object_type *second) {
   const char *names[MOST_MEMBERS + 1];
   int count = names_of(second, names, names_of(first, names, 0));
   names[count] = NULL;
@@ -30,7 +31,8 @@ static void unknown_member(reader *r, const char *name, const object_type *first
     fault_at(r, name, NULL, "unknown member of a %s", first->name);
 }
 
-bool check_members(reader *r, const json_t *object, const object_type *first, const object_type *second) {
+bool check_members(reader *r, const json_t *object, const object_type *first,
+                   const object_type *second) {
   bool good = true;
   const char *name;
   json_t *value;
@@ -38,7 +40,8 @@ bool check_members(reader *r, const json_t *object, const object_type *first, co
     const parameter *row = row_named(first, name);
     if (!row) row = row_named(second, name);
     if (!row) unknown_member(r, name, first, second);
-    if (row && row->flags & PARAMETER_PLANNED) fault_at(r, name, NULL, "is not offered by this version");
+    if (row && row->flags & PARAMETER_PLANNED)
+      fault_at(r, name, NULL, "is not offered by this version");
     good = good && row && !(row->flags & PARAMETER_PLANNED);
   }
   if (first->one_of && json_object_size(object) != 1) {
@@ -81,7 +84,8 @@ static void read_choice(reader *r, const json_t *v, const parameter *row, int *o
     strncat(list, i ? ", " : "", sizeof list - strlen(list) - 1);
     strncat(list, choices[i], sizeof list - strlen(list) - 1);
   }
-  fault_here(r, v, "must be one of %s%s%s%s", list, near ? "; did you mean \"" : "", near ? near : "", near ? "\"?" : "");
+  fault_here(r, v, "must be one of %s%s%s%s", list, near ? "; did you mean \"" : "",
+             near ? near : "", near ? "\"?" : "");
 }
 
 static void read_name(reader *r, const json_t *v, const char **out) {
@@ -98,7 +102,8 @@ static size_t limit_of(const object_type *t) {
   static const struct {
     const char *name;
     size_t limit;
-  } limits[] = {{"layer", LIMIT_LAYERS}, {"latent_heat", LIMIT_LATENT_HEATS}, {"zone", LIMIT_ZONES}};
+  } limits[] = {
+      {"layer", LIMIT_LAYERS}, {"latent_heat", LIMIT_LATENT_HEATS}, {"zone", LIMIT_ZONES}};
   for (int i = 0; i < COUNT_OF(limits); i++)
     if (!strcmp(limits[i].name, t->name)) return limits[i].limit;
   return LIMIT_TABLE_ROWS;
@@ -137,7 +142,8 @@ static void read_optional_series(reader *r, const json_t *v, const parameter *ro
   if (item && read_series(r, v, row->dimension, row->least, row->most, item)) *out = item;
 }
 
-static void read_member(reader *r, const json_t *v, const parameter *row, const json_t *whole, char *at) {
+static void read_member(reader *r, const json_t *v, const parameter *row, const json_t *whole,
+                        char *at) {
   switch (row->kind) {
   case VALUE_QUANTITY: read_ranged(r, v, row, row->dimension, (double *)at); break;
   case VALUE_FLAG:
@@ -147,7 +153,8 @@ static void read_member(reader *r, const json_t *v, const parameter *row, const 
       fault_here(r, v, "must be true or false");
     break;
   case VALUE_TEXT:
-    if (must_be_text(r, v) && !(*(const char **)at = arena_text(r->memory, json_string_value(v), json_string_length(v))))
+    if (must_be_text(r, v) &&
+        !(*(const char **)at = arena_text(r->memory, json_string_value(v), json_string_length(v))))
       r->no_memory = true;
     break;
   case VALUE_NAME: read_name(r, v, (const char **)at); break;
@@ -162,7 +169,9 @@ static void read_member(reader *r, const json_t *v, const parameter *row, const 
   case VALUE_OPTIONAL_SERIES: read_optional_series(r, v, row, (series **)at); break;
   case VALUE_COEFFICIENT: read_coefficient(r, v, (coefficient *)at); break;
   case VALUE_CONTACT: read_contact(r, v, (double *)at); break;
-  case VALUE_CURVE: read_curve(r, v, row->dimension, row->flags & PARAMETER_ABOVE, (curve *)at); break;
+  case VALUE_CURVE:
+    read_curve(r, v, row->dimension, row->flags & PARAMETER_ABOVE, (curve *)at);
+    break;
   case VALUE_TABLE: read_table(r, v, row->dimension, row->second, false, (table *)at); break;
   case VALUE_TARGET: read_target(r, v, json_object_get(whole, "in"), (target *)at); break;
   case VALUE_LOCATION: read_location(r, v, (location *)at); break;
@@ -186,20 +195,22 @@ static void read_member(reader *r, const json_t *v, const parameter *row, const 
   case VALUE_FACES: read_faces(r, v, (faces *)at); break;
   case VALUE_UNTIL: read_until(r, v, (until *)at); break;
   case VALUE_COUNT_OF:
-  case VALUE_LEVEL:  /* in the dimension of a target: read by who knows it */
+  case VALUE_LEVEL: /* in the dimension of a target: read by who knows it */
   case VALUE_START:
   case VALUE_PLACES: break;
   }
 }
 
-static void read_rows(reader *r, const json_t *object, const object_type *t, const char *const *skip, char *out) {
+static void read_rows(reader *r, const json_t *object, const object_type *t,
+                      const char *const *skip, char *out) {
   for (int i = 0; t && i < t->count; i++) {
     const parameter *row = &t->parameters[i];
     if (row->flags & PARAMETER_PLANNED || skipped(row->name, skip)) continue;
     const json_t *v = json_object_get(object, row->name);
     set_default(row, out + row->offset);
     if (!v) {
-      if (row->flags & PARAMETER_REQUIRED) fault_at(r, row->name, NULL, "is missing: %s", row->about ? row->about : "");
+      if (row->flags & PARAMETER_REQUIRED)
+        fault_at(r, row->name, NULL, "is missing: %s", row->about ? row->about : "");
       continue;
     }
     size_t before = path_push(r, row->name);
@@ -208,8 +219,8 @@ static void read_rows(reader *r, const json_t *object, const object_type *t, con
   }
 }
 
-void read_object(reader *r, const json_t *object, const object_type *first, const object_type *second,
-                 const char *const *skip, void *out) {
+void read_object(reader *r, const json_t *object, const object_type *first,
+                 const object_type *second, const char *const *skip, void *out) {
   check_members(r, object, first, second);
   read_rows(r, object, first, skip, out);
   read_rows(r, object, second, skip, out);

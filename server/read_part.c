@@ -25,8 +25,8 @@ static const shape *read_shape(reader *r, const json_t *v) {
     if (planned)
       fault_here(r, v, "is not offered by this version; plate, cylinder and sphere are");
     else
-      fault_here(r, v, "unknown shape (plate, cylinder, sphere)%s%s%s", near ? "; did you mean \"" : "", near ? near : "",
-                 near ? "\"?" : "");
+      fault_here(r, v, "unknown shape (plate, cylinder, sphere)%s%s%s",
+                 near ? "; did you mean \"" : "", near ? near : "", near ? "\"?" : "");
   }
   path_pop(r, before);
   return s;
@@ -45,19 +45,24 @@ static void name_layers(reader *r, part *p) {
 }
 
 /* The size that layers stand in place of: thickness, or diameter. */
-static const char *layered_size(const part *p) { return p->shape->sizes.parameters[0].name; }
+static const char *layered_size(const part *p) {
+  return p->shape->sizes.parameters[0].name;
+}
 
 static void compare_sizes(reader *r, part *p) {
   if (!isfinite(p->sizes[0])) return;
-  double origin, sum = p->shape->extent(p, &origin), whole = p->shape->power ? 2 * (origin + sum) : sum;
+  double origin, sum = p->shape->extent(p, &origin),
+                 whole = p->shape->power ? 2 * (origin + sum) : sum;
   if (!(sum > 0) || fabs(whole - p->sizes[0]) <= SAME_SIZE * p->sizes[0]) return;
-  fault_at(r, layered_size(p), NULL, "the layers are %s than the part: together they make a %s of %.9g m, not %.9g m",
+  fault_at(r, layered_size(p), NULL,
+           "the layers are %s than the part: together they make a %s of %.9g m, not %.9g m",
            whole > p->sizes[0] ? "thicker" : "thinner", layered_size(p), whole, p->sizes[0]);
 }
 
 static void single_layer(reader *r, part *p, const json_t *v) {
   double origin;
-  if (!json_object_get(v, "material")) fault_at(r, "material", NULL, "is missing: a material's name, or give layers");
+  if (!json_object_get(v, "material"))
+    fault_at(r, "material", NULL, "is missing: a material's name, or give layers");
   if (!json_object_get(v, layered_size(p))) {
     fault_at(r, layered_size(p), NULL, "is missing");
     return;
@@ -70,14 +75,19 @@ static void single_layer(reader *r, part *p, const json_t *v) {
     thickness = NAN;
   }
   p->layers.count = 1;
-  p->layers.items[0] = (layer){.material = p->material, .thickness = thickness, .heat_generation = p->heat_generation, .start = NAN};
+  p->layers.items[0] = (layer){.material = p->material,
+                               .thickness = thickness,
+                               .heat_generation = p->heat_generation,
+                               .start = NAN};
 }
 
 static void check_layers(reader *r, part *p, const json_t *v) {
-  if (!p->layers.count) fault_at(r, "layers", json_object_get(v, "layers"), "must have at least one layer");
+  if (!p->layers.count)
+    fault_at(r, "layers", json_object_get(v, "layers"), "must have at least one layer");
   for (int i = 0; i < 2; i++) {
     const char *name = i ? "heat_generation" : "material";
-    if (json_object_get(v, name)) fault_at(r, name, NULL, "stands in each layer where there are layers");
+    if (json_object_get(v, name))
+      fault_at(r, name, NULL, "stands in each layer where there are layers");
   }
   const json_t *list = json_object_get(v, "layers");
   size_t last = json_array_size(list);
@@ -98,7 +108,8 @@ void read_part(reader *r, const json_t *v) {
   p->shape = read_shape(r, json_object_get(v, "shape"));
   for (int i = 0; i < MOST_SIZES; i++) p->sizes[i] = NAN;
   if (!p->shape) {
-    p->shape = shapes[0]; /* names of its faces may be wrong: what follows is told only where it stands alone */
+    p->shape = shapes[0]; /* names of its faces may be wrong: what follows is told only where it
+                             stands alone */
     r->shapeless = true;
     return;
   }
@@ -112,14 +123,16 @@ void read_part(reader *r, const json_t *v) {
 
 /* ---- points ---- */
 
-/* Radius or depth of a location to its layer: at an interface the outer one unless `side` says otherwise. */
+/* Radius or depth of a location to its layer: at an interface the outer one unless `side` says
+ * otherwise. */
 static bool put_in_layer(reader *r, double at, const json_t *side, location *out) {
   const part *p = &r->the_case->part;
-  double origin, extent = p->shape->extent(p, &origin), inner = origin, close = 1e-9 * (origin + extent);
+  double origin, extent = p->shape->extent(p, &origin), inner = origin,
+                 close = 1e-9 * (origin + extent);
   if (!isfinite(extent)) return false;
   if (at < origin - close || at > origin + extent + close) {
-    fault_here(r, NULL, "lies outside of the part: %s goes from %.6g to %.6g m, not to %.6g m", p->shape->coordinates[0], origin,
-               origin + extent, at);
+    fault_here(r, NULL, "lies outside of the part: %s goes from %.6g to %.6g m, not to %.6g m",
+               p->shape->coordinates[0], origin, origin + extent, at);
     return false;
   }
   int towards = -1;
@@ -153,10 +166,12 @@ static bool from_face(reader *r, const json_t *v, location *out) {
   const char *name;
   json_t *value;
   bool good = true;
-  json_object_foreach((json_t *)v, name, value) if (strcmp(name, "face") && strcmp(name, "depth") && strcmp(name, "side")) {
+  json_object_foreach((json_t *)v, name, value) if (strcmp(name, "face") && strcmp(name, "depth") &&
+                                                    strcmp(name, "side")) {
     static const char *const members[] = {"face", "depth", "side", NULL};
     const char *near = nearest_name(name, members);
-    fault_at(r, name, NULL, "unknown member of a location%s%s%s", near ? "; did you mean \"" : "", near ? near : "", near ? "\"?" : "");
+    fault_at(r, name, NULL, "unknown member of a location%s%s%s", near ? "; did you mean \"" : "",
+             near ? near : "", near ? "\"?" : "");
     good = false;
   }
   size_t before = path_push(r, "face");
@@ -170,7 +185,8 @@ static bool from_face(reader *r, const json_t *v, location *out) {
   }
   path_pop(r, before);
   if (face < 0 || !good || !isfinite(extent)) return false;
-  return put_in_layer(r, face ? origin + extent - depth : origin + depth, json_object_get(v, "side"), out);
+  return put_in_layer(r, face ? origin + extent - depth : origin + depth,
+                      json_object_get(v, "side"), out);
 }
 
 static bool by_coordinate(reader *r, const json_t *v, location *out) {
@@ -179,12 +195,17 @@ static bool by_coordinate(reader *r, const json_t *v, location *out) {
   json_t *value;
   bool good = true;
   double at = NAN;
-  json_object_foreach((json_t *)v, name, value) if (strcmp(name, coordinate) && strcmp(name, "side")) {
-    fault_at(r, name, NULL, "unknown member of a location: a %s has the coordinate %s", p->shape->name, coordinate);
+  json_object_foreach((json_t *)v, name,
+                      value) if (strcmp(name, coordinate) && strcmp(name, "side")) {
+    fault_at(r, name, NULL, "unknown member of a location: a %s has the coordinate %s",
+             p->shape->name, coordinate);
     good = false;
   }
   if (!json_object_get(v, coordinate)) {
-    if (good) fault_here(r, v, "must be \"center\", \"mid_wall\", {\"face\": F, \"depth\": d} or {\"%s\": ...}", coordinate);
+    if (good)
+      fault_here(r, v,
+                 "must be \"center\", \"mid_wall\", {\"face\": F, \"depth\": d} or {\"%s\": ...}",
+                 coordinate);
     return false;
   }
   size_t before = path_push(r, coordinate);
@@ -212,8 +233,10 @@ bool read_location(reader *r, const json_t *v, location *out) {
     return put_in_layer(r, p->shape->power ? 0 : extent / 2, NULL, out);
   }
   if (text && !strcmp(text, "mid_wall")) return put_in_layer(r, origin + extent / 2, NULL, out);
-  if (json_is_object(v)) return json_object_get(v, "face") ? from_face(r, v, out) : by_coordinate(r, v, out);
-  fault_here(r, v, "must be \"center\", \"mid_wall\", {\"face\": F, \"depth\": d} or {\"%s\": ...}", p->shape->coordinates[0]);
+  if (json_is_object(v))
+    return json_object_get(v, "face") ? from_face(r, v, out) : by_coordinate(r, v, out);
+  fault_here(r, v, "must be \"center\", \"mid_wall\", {\"face\": F, \"depth\": d} or {\"%s\": ...}",
+             p->shape->coordinates[0]);
   return false;
 }
 

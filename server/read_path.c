@@ -46,7 +46,8 @@ static char *rendered(const json_t *v) {
   if (!v) return NULL;
   if (json_is_object(v) || (json_is_array(v) && json_array_size(v) > 8))
     return strdup(json_is_object(v) ? "an object" : "an array");
-  char *text = json_dumps(v, JSON_ENCODE_ANY | JSON_COMPACT | JSON_ENSURE_ASCII | JSON_REAL_PRECISION(12));
+  char *text =
+      json_dumps(v, JSON_ENCODE_ANY | JSON_COMPACT | JSON_ENSURE_ASCII | JSON_REAL_PRECISION(12));
   if (!text) return NULL;
   size_t length = strlen(text);
   if (json_is_string(v) && length >= 2) { /* a text without its quotes */
@@ -58,7 +59,16 @@ static char *rendered(const json_t *v) {
   return text;
 }
 
+/* A reference that led nowhere left null behind; its fault stands already. */
+static bool told_already(const reader *r, const char *at, const json_t *got) {
+  if (!json_is_null(got)) return false;
+  for (int i = 0; i < r->faults->count; i++)
+    if (!strcmp(r->faults->items[i].at, at)) return true;
+  return false;
+}
+
 static void add(reader *r, const char *at, const json_t *got, const char *is, va_list arguments) {
+  if (told_already(r, at, got)) return;
   char text[512];
   vsnprintf(text, sizeof text, is, arguments);
   char *shown = rendered(got);
@@ -85,7 +95,8 @@ void fault_at(reader *r, const char *member, const json_t *got, const char *is, 
 void warn_here(reader *r, const char *is, ...) {
   document *d = r->document;
   if (!d || d->warning_count >= LIMIT_WARNINGS) return;
-  if (!d->warnings && !(d->warnings = arena_array(&d->memory, LIMIT_WARNINGS, sizeof *d->warnings))) {
+  if (!d->warnings &&
+      !(d->warnings = arena_array(&d->memory, LIMIT_WARNINGS, sizeof *d->warnings))) {
     r->no_memory = true;
     return;
   }

@@ -7,9 +7,9 @@
 #include <math.h>
 #include <string.h>
 
-#define LONG_BARE_LENGTH 5.0   /* m: a bare number above draws a warning */
+#define LONG_BARE_LENGTH    5.0  /* m: a bare number above draws a warning */
 #define LONGEST_BARE_LENGTH 50.0 /* m: above it must carry its unit */
-#define BELOW_ZERO 1e-9        /* K: absolute zero may be missed by round-off */
+#define BELOW_ZERO          1e-9 /* K: absolute zero may be missed by round-off */
 
 static bool bare_number(reader *r, const json_t *v, dimension d, double *out) {
   double number = json_number_value(v);
@@ -47,9 +47,11 @@ static bool text_quantity(reader *r, const json_t *v, dimension d, double *out) 
 
 bool read_quantity(reader *r, const json_t *v, dimension d, double *out) {
   double value;
-  bool good = json_is_number(v) ? bare_number(r, v, d, &value) : json_is_string(v) && text_quantity(r, v, d, &value);
+  bool good = json_is_number(v) ? bare_number(r, v, d, &value)
+                                : json_is_string(v) && text_quantity(r, v, d, &value);
   if (!good) {
-    if (!json_is_number(v) && !json_is_string(v)) fault_here(r, v, "must be a number or \"<number> <unit>\"");
+    if (!json_is_number(v) && !json_is_string(v))
+      fault_here(r, v, "must be a number or \"<number> <unit>\"");
     return false;
   }
   if (!isfinite(value)) {
@@ -70,16 +72,19 @@ bool read_quantity(reader *r, const json_t *v, dimension d, double *out) {
 bool read_ranged(reader *r, const json_t *v, const parameter *row, dimension d, double *out) {
   double value;
   if (!read_quantity(r, v, d, &value)) return false;
-  double shown = d == DIMENSION_TEMPERATURE ? ZERO_CELSIUS : 0; /* bounds are told in default units */
+  double shown =
+      d == DIMENSION_TEMPERATURE ? ZERO_CELSIUS : 0; /* bounds are told in default units */
   if (row->flags & PARAMETER_ABOVE ? !(value > row->least) : !(value >= row->least)) {
-    fault_here(r, v, "must be %s %.10g%s%s", row->flags & PARAMETER_ABOVE ? "greater than" : "at least",
-               row->least - shown, row->least == 0 || d == DIMENSION_NUMBER ? "" : " ",
+    fault_here(r, v, "must be %s %.10g%s%s",
+               row->flags & PARAMETER_ABOVE ? "greater than" : "at least", row->least - shown,
+               row->least == 0 || d == DIMENSION_NUMBER ? "" : " ",
                row->least == 0 || d == DIMENSION_NUMBER ? "" : dimension_unit(d));
     return false;
   }
   if (row->flags & PARAMETER_BELOW ? !(value < row->most) : !(value <= row->most)) {
-    fault_here(r, v, "must be %s %.10g%s%s", row->flags & PARAMETER_BELOW ? "less than" : "at most", row->most - shown,
-               d == DIMENSION_NUMBER ? "" : " ", d == DIMENSION_NUMBER ? "" : dimension_unit(d));
+    fault_here(r, v, "must be %s %.10g%s%s", row->flags & PARAMETER_BELOW ? "less than" : "at most",
+               row->most - shown, d == DIMENSION_NUMBER ? "" : " ",
+               d == DIMENSION_NUMBER ? "" : dimension_unit(d));
     return false;
   }
   *out = value;
@@ -95,7 +100,8 @@ bool read_contact(reader *r, const json_t *v, double *out) {
                                     .most = INFINITY,
                                     .fallback = NAN}};
   static const parameter resistance = {.least = 0, .most = INFINITY};
-  static const object_type type = {.name = "contact", .size = sizeof(double), .parameters = rows, .count = 1};
+  static const object_type type = {
+      .name = "contact", .size = sizeof(double), .parameters = rows, .count = 1};
   if (!json_is_object(v)) return read_ranged(r, v, &resistance, DIMENSION_RESISTANCE, out);
   double conductance = NAN;
   read_object(r, v, &type, NULL, NULL, &conductance);

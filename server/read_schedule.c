@@ -21,8 +21,13 @@ static void read_profile(reader *r, const json_t *v, start *out) {
 }
 
 static void read_steady_start(reader *r, const json_t *v, start *out) {
-  static const parameter rows[] = {{.name = "faces", .kind = VALUE_FACES, .offset = 0, .flags = PARAMETER_REQUIRED, .about = "condition of each face"}};
-  static const object_type type = {.name = "steady", .size = sizeof(faces), .parameters = rows, .count = 1};
+  static const parameter rows[] = {{.name = "faces",
+                                    .kind = VALUE_FACES,
+                                    .offset = 0,
+                                    .flags = PARAMETER_REQUIRED,
+                                    .about = "condition of each face"}};
+  static const object_type type = {
+      .name = "steady", .size = sizeof(faces), .parameters = rows, .count = 1};
   size_t before = path_push(r, "steady");
   out->kind = START_STEADY;
   if (must_be_object(r, v)) read_object(r, v, &type, NULL, NULL, &out->faces);
@@ -94,10 +99,12 @@ static void read_leaf(reader *r, const json_t *v, condition_node *node) {
     return;
   }
   node->level = read_level(r, v, "of_set", &node->of);
-  if (!json_object_get(v, "of_set")) fault_at(r, "of_set", NULL, "is missing: the value that the band lies around");
+  if (!json_object_get(v, "of_set"))
+    fault_at(r, "of_set", NULL, "is missing: the value that the band lies around");
   if (node->of.is_figure) fault_at(r, "of", json_object_get(v, "of"), "a band is for places");
   before = path_push(r, "within");
-  if (read_quantity(r, json_object_get(v, "within"), DIMENSION_DIFFERENCE, &node->band) && !(node->band > 0))
+  if (read_quantity(r, json_object_get(v, "within"), DIMENSION_DIFFERENCE, &node->band) &&
+      !(node->band > 0))
     fault_here(r, json_object_get(v, "within"), "must be greater than 0");
   path_pop(r, before);
 }
@@ -130,7 +137,8 @@ static void read_group(reader *r, const json_t *v, const char *name, until_list 
 
 static void read_node(reader *r, const json_t *v, until_list *list, int index, bool root) {
   if (!must_be_object(r, v) || !check_members(r, v, &until_type, NULL)) return;
-  if (!root && json_object_get(v, "held_for")) fault_at(r, "held_for", NULL, "stands beside the outermost condition");
+  if (!root && json_object_get(v, "held_for"))
+    fault_at(r, "held_for", NULL, "stands beside the outermost condition");
   bool all = json_object_get(v, "all"), any = json_object_get(v, "any");
   if (all + any + (json_object_get(v, "of") != NULL) > 1) {
     fault_here(r, NULL, "must have one of all, any and of");
@@ -152,13 +160,16 @@ void read_until(reader *r, const json_t *v, until *out) {
   const json_t *held = json_is_object(v) ? json_object_get(v, "held_for") : NULL;
   if (!held) return;
   size_t before = path_push(r, "held_for");
-  if (read_quantity(r, held, DIMENSION_TIME, &out->held_for) && out->held_for < 0) fault_here(r, held, "must be at least 0");
+  if (read_quantity(r, held, DIMENSION_TIME, &out->held_for) && out->held_for < 0)
+    fault_here(r, held, "must be at least 0");
   path_pop(r, before);
 }
 
 /* ---- stages ---- */
 
-static bool has(const json_t *v, const char *name) { return json_object_get(v, name) != NULL; }
+static bool has(const json_t *v, const char *name) {
+  return json_object_get(v, name) != NULL;
+}
 
 static void set_end(reader *r, const json_t *v, stage *g, bool last) {
   bool steady = g->steady, lasts = has(v, "lasts"), until = has(v, "until");
@@ -193,16 +204,19 @@ void read_stages(reader *r, const json_t *v) {
     read_stage(r, json_array_get(v, i), &c->stages.items[i], i + 1 == count);
     for (size_t k = 0; k < i; k++)
       if (*c->stages.items[i].name && !strcmp(c->stages.items[i].name, c->stages.items[k].name))
-        fault_at(r, "name", json_object_get(json_array_get(v, i), "name"), "another stage has this name");
+        fault_at(r, "name", json_object_get(json_array_get(v, i), "name"),
+                 "another stage has this name");
     path_pop(r, before);
   }
   bool only_steady = count == 1 && c->stages.items[0].end == STAGE_STEADY;
-  if (json_object_get(r->root, "start") || only_steady || layers_start(c) || !c->part.layers.count) return;
+  if (json_object_get(r->root, "start") || only_steady || layers_start(c) || !c->part.layers.count)
+    return;
   size_t length = r->length;
   char path[LONGEST_PATH];
   memcpy(path, r->path, sizeof path);
   path_pop(r, 0);
-  fault_at(r, "start", NULL, "is missing: the temperature at the start, unless every layer has its own");
+  fault_at(r, "start", NULL,
+           "is missing: the temperature at the start, unless every layer has its own");
   memcpy(r->path, path, sizeof path);
   r->length = length;
 }

@@ -26,7 +26,8 @@ static bool in_column(reader *r, const json_t *v, const char *unit, dimension d,
   return true;
 }
 
-static bool read_row(reader *r, const json_t *row, const column_units *units, const dimension d[2], double out[2]) {
+static bool read_row(reader *r, const json_t *row, const column_units *units, const dimension d[2],
+                     double out[2]) {
   if (!json_is_array(row) || json_array_size(row) != 2) {
     fault_here(r, row, "must be a row of two values");
     return false;
@@ -40,7 +41,8 @@ static bool read_row(reader *r, const json_t *row, const column_units *units, co
   return good;
 }
 
-static bool read_rows(reader *r, const json_t *v, const column_units *units, const dimension d[2], bool strict, table *out) {
+static bool read_rows(reader *r, const json_t *v, const column_units *units, const dimension d[2],
+                      bool strict, table *out) {
   if (!must_be_array(r, v, LIMIT_TABLE_ROWS, "rows")) return false;
   size_t count = json_array_size(v);
   if (!count) {
@@ -56,8 +58,12 @@ static bool read_rows(reader *r, const json_t *v, const column_units *units, con
     x[i] = fine ? value[0] : i ? x[i - 1] : -INFINITY;
     y[i] = fine ? value[1] : 0;
     bool falls = i && (strict ? x[i] <= x[i - 1] : x[i] < x[i - 1]);
-    if (fine && falls) fault_here(r, json_array_get(v, i), strict ? "rows must rise in their first column" : "rows must not fall in their first column");
-    if (fine && i > 1 && x[i] == x[i - 2]) fault_here(r, json_array_get(v, i), "a jump is two rows at one place, not three");
+    if (fine && falls)
+      fault_here(r, json_array_get(v, i),
+                 strict ? "rows must rise in their first column"
+                        : "rows must not fall in their first column");
+    if (fine && i > 1 && x[i] == x[i - 2])
+      fault_here(r, json_array_get(v, i), "a jump is two rows at one place, not three");
     good = good && fine && !falls && !(i > 1 && x[i] == x[i - 2]);
     path_pop(r, before);
   }
@@ -103,7 +109,8 @@ static bool two_rows(reader *r, series *out, const double x[2], const double y[2
   return true;
 }
 
-static bool member_of_dimension(reader *r, const json_t *object, const char *name, dimension d, double *out) {
+static bool member_of_dimension(reader *r, const json_t *object, const char *name, dimension d,
+                                double *out) {
   const json_t *v = json_object_get(object, name);
   if (!v) {
     fault_at(r, name, NULL, "is missing");
@@ -115,7 +122,8 @@ static bool member_of_dimension(reader *r, const json_t *object, const char *nam
   return good;
 }
 
-/* A rate of something that is not a temperature is that thing's unit per second, and has no unit strings. */
+/* A rate of something that is not a temperature is that thing's unit per second, and has no unit
+ * strings. */
 static bool ramp(reader *r, const json_t *v, dimension d, series *out) {
   static const char *const skip[] = {"from", "to", "rate", NULL};
   if (!must_be_object(r, v)) return false;
@@ -151,13 +159,18 @@ static bool sine(reader *r, const json_t *v, dimension d, series *out) {
   int faults = r->faults->found;
   read_object(r, v, &sine_type, NULL, skip, &f);
   member_of_dimension(r, v, "mean", d, &f.mean);
-  member_of_dimension(r, v, "amplitude", d == DIMENSION_TEMPERATURE ? DIMENSION_DIFFERENCE : d, &f.amplitude);
+  member_of_dimension(r, v, "amplitude", d == DIMENSION_TEMPERATURE ? DIMENSION_DIFFERENCE : d,
+                      &f.amplitude);
   if (r->faults->found != faults) return false;
   if (d == DIMENSION_TEMPERATURE && f.mean - fabs(f.amplitude) < 0) {
     fault_here(r, NULL, "falls below absolute zero");
     return false;
   }
-  *out = (series){.kind = SERIES_SINE, .value = f.mean, .amplitude = f.amplitude, .period = f.period, .phase = f.phase};
+  *out = (series){.kind = SERIES_SINE,
+                  .value = f.mean,
+                  .amplitude = f.amplitude,
+                  .period = f.period,
+                  .phase = f.phase};
   return true;
 }
 
@@ -173,8 +186,8 @@ static bool fire(reader *r, const json_t *v, dimension d, series *out) {
       return true;
     }
   const char *near = nearest_name(json_string_value(v), fire_curve_names);
-  fault_here(r, v, "must be one of standard, hydrocarbon, external%s%s%s", near ? "; did you mean \"" : "",
-             near ? near : "", near ? "\"?" : "");
+  fault_here(r, v, "must be one of standard, hydrocarbon, external%s%s%s",
+             near ? "; did you mean \"" : "", near ? near : "", near ? "\"?" : "");
   return false;
 }
 
@@ -204,7 +217,8 @@ static bool read_zone(reader *r, const json_t *v, dimension d, double blend, zon
   int faults = r->faults->found;
   read_object(r, v, &zone_type, NULL, skip, z);
   member_of_dimension(r, v, "value", d, &z->value);
-  if (z->length > 0 && z->length < blend) fault_at(r, "length", json_object_get(v, "length"), "is shorter than blend");
+  if (z->length > 0 && z->length < blend)
+    fault_at(r, "length", json_object_get(v, "length"), "is shorter than blend");
   return r->faults->found == faults;
 }
 
@@ -231,9 +245,11 @@ static bool line(reader *r, const json_t *v, dimension d, series *out) {
   return r->faults->found == faults && !r->no_memory && zones_to_table(r, &f, out);
 }
 
-static const char *const forms[] = {"ramp", "table", "sine", "fire", "line", "log", "series", "input", NULL};
+static const char *const forms[] = {"ramp", "table",  "sine",  "fire", "line",
+                                    "log",  "series", "input", NULL};
 
-static bool by_form(reader *r, const json_t *whole, const char *form, const json_t *v, dimension d, series *out) {
+static bool by_form(reader *r, const json_t *whole, const char *form, const json_t *v, dimension d,
+                    series *out) {
   if (!strcmp(form, "ramp")) return ramp(r, v, d, out);
   if (!strcmp(form, "table")) return tabled(r, whole, v, d, out);
   if (!strcmp(form, "sine")) return sine(r, v, d, out);
@@ -259,8 +275,9 @@ static bool read_form(reader *r, const json_t *v, dimension d, series *out) {
   for (int i = 0; i < 6; i++) known = known || !strcmp(forms[i], form);
   if (!known) {
     const char *near = nearest_name(form, forms);
-    fault_at(r, form, NULL, "is no form of a series%s%s%s", near ? "; did you mean \"" : " (ramp, table, sine, fire, line, log)",
-             near ? near : "", near ? "\"?" : "");
+    fault_at(r, form, NULL, "is no form of a series%s%s%s",
+             near ? "; did you mean \"" : " (ramp, table, sine, fire, line, log)", near ? near : "",
+             near ? "\"?" : "");
     return false;
   }
   size_t before = path_push(r, form);
@@ -307,7 +324,8 @@ bool read_coefficient(reader *r, const json_t *v, coefficient *out) {
   out->by_surface_temperature = true;
   const char *name;
   json_t *value;
-  json_object_foreach((json_t *)v, name, value) if (strcmp(name, "by_surface_temperature") && strcmp(name, "units"))
+  json_object_foreach((json_t *)v, name,
+                      value) if (strcmp(name, "by_surface_temperature") && strcmp(name, "units"))
       fault_at(r, name, NULL, "unknown member of a coefficient");
   if (!read_units(r, v, &units)) return false;
   size_t before = path_push(r, "by_surface_temperature");

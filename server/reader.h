@@ -1,5 +1,5 @@
-/* reader.h: what the readers of a case share. Only server/read*.c, document.c and library.c include it: they are the
-   family that knows the JSON library. */
+/* reader.h: what the readers of a case share. Only server/read*.c, document.c and library.c include
+   it: they are the family that knows the JSON library. */
 #ifndef CORESOAK_READER_H
 #define CORESOAK_READER_H
 
@@ -11,29 +11,32 @@
 
 enum { LONGEST_PATH = 512, MOST_DEPTH = 32, MOST_ELEMENTS = 2000000 };
 
-/* The reading of one document. Every function that can meet a fault adds it at the current path and goes on. */
+/* The reading of one document. Every function that can meet a fault adds it at the current path and
+ * goes on. */
 typedef struct reader {
   fault_list *faults;
   const library *library;
-  document *document;     /* receives warnings */
-  arena *memory;          /* of the case */
-  heat_case *the_case;    /* being filled */
-  json_t *root;           /* the finished document: inputs and named series put in place */
+  document *document;  /* receives warnings */
+  arena *memory;       /* of the case */
+  heat_case *the_case; /* being filled */
+  json_t *root;        /* the finished document: inputs and named series put in place */
   char path[LONGEST_PATH];
   size_t length;
   bool no_memory;
-  bool in_library;        /* reading a file of the library */
-  bool shapeless;         /* the shape is unknown: its faces and coordinates cannot be judged */
+  bool in_library; /* reading a file of the library */
+  bool shapeless;  /* the shape is unknown: its faces and coordinates cannot be judged */
 } reader;
 
 /* ---- the path (read_path.c) ---- */
 
-size_t path_push(reader *r, const char *member);   /* returns what path_pop takes */
+size_t path_push(reader *r, const char *member); /* returns what path_pop takes */
 size_t path_push_index(reader *r, size_t index);
 void path_pop(reader *r, size_t length);
 
-/* A fault at the path, or at a member below it (NULL: none); got is rendered from the value (NULL: none). */
-void fault_here(reader *r, const json_t *got, const char *is, ...) __attribute__((format(printf, 3, 4)));
+/* A fault at the path, or at a member below it (NULL: none); got is rendered from the value (NULL:
+ * none). */
+void fault_here(reader *r, const json_t *got, const char *is, ...)
+    __attribute__((format(printf, 3, 4)));
 void fault_at(reader *r, const char *member, const json_t *got, const char *is, ...)
     __attribute__((format(printf, 4, 5)));
 
@@ -51,12 +54,14 @@ bool is_name(const char *text);
 
 /* ---- rows (read_object.c) ---- */
 
-/* Fills `out` from an object by the rows of one or two types (second may be NULL). Members by kinds that need names of
-   the case are read too; `skip` names members (NULL-terminated list) that the caller reads itself. */
-void read_object(reader *r, const json_t *object, const object_type *first, const object_type *second,
-                 const char *const *skip, void *out);
+/* Fills `out` from an object by the rows of one or two types (second may be NULL). Members by kinds
+   that need names of the case are read too; `skip` names members (NULL-terminated list) that the
+   caller reads itself. */
+void read_object(reader *r, const json_t *object, const object_type *first,
+                 const object_type *second, const char *const *skip, void *out);
 /* Only the check of member names, and of exactly one member where the type is a union. */
-bool check_members(reader *r, const json_t *object, const object_type *first, const object_type *second);
+bool check_members(reader *r, const json_t *object, const object_type *first,
+                   const object_type *second);
 
 /* ---- values ---- */
 
@@ -100,7 +105,8 @@ int layer_named(const reader *r, const char *name);
 
 /* ---- whole ---- */
 
-/* JSON bytes to a tree with the limits of depth, elements and characters; faults carry line and column. */
+/* JSON bytes to a tree with the limits of depth, elements and characters; faults carry line and
+ * column. */
 json_t *parse_json(const char *bytes, size_t length, fault_list *faults);
 /* A copy of a document in which every {"input": NAME} and {"series": NAME} is put in place. */
 json_t *expand_document(reader *r, const json_t *given);

@@ -17,7 +17,8 @@ typedef struct unit {
   signed char power[BASES];
 } unit;
 
-/* UCUM codes and the usual short forms. Factors: BIPM, The SI Brochure, 9th ed.; inch, pound and Btu (IT) by NIST SP 811. */
+/* UCUM codes and the usual short forms. Factors: BIPM, The SI Brochure, 9th ed.; inch, pound and
+ * Btu (IT) by NIST SP 811. */
 static const unit units[] = {
     {"1", 1, {0}},
     {"%", 0.01, {0}},
@@ -82,15 +83,38 @@ static const unit units[] = {
 };
 
 /* What is often written for what is meant. */
-static const char *const meant[][2] = {
-    {"F", "degF"},       {"C", "degC"},         {"deg C", "degC"},      {"deg F", "degF"},
-    {"\302\272C", "\302\260C"}, {"sec", "s"},   {"secs", "s"},          {"second", "s"},
-    {"seconds", "s"},    {"mins", "min"},       {"minute", "min"},      {"minutes", "min"},
-    {"hr", "h"},         {"hrs", "h"},          {"hour", "h"},          {"hours", "h"},
-    {"day", "d"},        {"days", "d"},         {"inch", "in"},         {"inches", "in"},
-    {"\"", "in"},        {"feet", "ft"},        {"W/mK", "W/(m.K)"},    {"W/m K", "W/(m.K)"},
-    {"W/m2K", "W/(m2.K)"}, {"W/m2 K", "W/(m2.K)"}, {"W/m^2K", "W/(m2.K)"}, {"J/kgK", "J/(kg.K)"},
-    {"J/kg K", "J/(kg.K)"}, {"percent", "%"},   {"kelvin", "K"},        {"Kelvin", "K"}};
+static const char *const meant[][2] = {{"F", "degF"},
+                                       {"C", "degC"},
+                                       {"deg C", "degC"},
+                                       {"deg F", "degF"},
+                                       {"\302\272C", "\302\260C"},
+                                       {"sec", "s"},
+                                       {"secs", "s"},
+                                       {"second", "s"},
+                                       {"seconds", "s"},
+                                       {"mins", "min"},
+                                       {"minute", "min"},
+                                       {"minutes", "min"},
+                                       {"hr", "h"},
+                                       {"hrs", "h"},
+                                       {"hour", "h"},
+                                       {"hours", "h"},
+                                       {"day", "d"},
+                                       {"days", "d"},
+                                       {"inch", "in"},
+                                       {"inches", "in"},
+                                       {"\"", "in"},
+                                       {"feet", "ft"},
+                                       {"W/mK", "W/(m.K)"},
+                                       {"W/m K", "W/(m.K)"},
+                                       {"W/m2K", "W/(m2.K)"},
+                                       {"W/m2 K", "W/(m2.K)"},
+                                       {"W/m^2K", "W/(m2.K)"},
+                                       {"J/kgK", "J/(kg.K)"},
+                                       {"J/kg K", "J/(kg.K)"},
+                                       {"percent", "%"},
+                                       {"kelvin", "K"},
+                                       {"Kelvin", "K"}};
 
 static const signed char powers[DIMENSION_COUNT][BASES] = {
     [DIMENSION_LENGTH] = {0, 1},
@@ -125,7 +149,8 @@ static double kept_in(dimension d) {
   return d == DIMENSION_MATURITY ? 3600 : 1;
 }
 
-/* ---- parsing a unit: term (("." | "/" | "*") term)*, term = symbol exponent? | "(" unit ")" ---- */
+/* ---- parsing a unit: term (("." | "/" | "*") term)*, term = symbol exponent? | "(" unit ")" ----
+ */
 
 typedef struct parse {
   const char *at;
@@ -133,7 +158,8 @@ typedef struct parse {
 } parse;
 
 static void multiply(unit *a, const unit *b, int power) {
-  for (int i = 0; i < abs(power); i++) a->factor = power > 0 ? a->factor * b->factor : a->factor / b->factor;
+  for (int i = 0; i < abs(power); i++)
+    a->factor = power > 0 ? a->factor * b->factor : a->factor / b->factor;
   for (int i = 0; i < BASES; i++) a->power[i] = (signed char)(a->power[i] + power * b->power[i]);
 }
 
@@ -277,15 +303,19 @@ static void suggest(const char *text, dimension d, char *hint, size_t size) {
       return;
     }
   if (d == DIMENSION_ANY || d == DIMENSION_NUMBER) return;
-  const char *also = d == DIMENSION_LENGTH ? "mm, m, in" : d == DIMENSION_TIME ? "s, min, h"
-                     : d == DIMENSION_TEMPERATURE ? "degC, degF, K" : d == DIMENSION_DIFFERENCE ? "K, degF" : NULL;
+  const char *also = d == DIMENSION_LENGTH        ? "mm, m, in"
+                     : d == DIMENSION_TIME        ? "s, min, h"
+                     : d == DIMENSION_TEMPERATURE ? "degC, degF, K"
+                     : d == DIMENSION_DIFFERENCE  ? "K, degF"
+                                                  : NULL;
   snprintf(hint, size, "a %s is in %s%s", dimension_name(d), also ? also : dimension_unit(d),
            unit_named(text, &u) ? ", not in this unit" : "");
   for (char *p = hint; *p; p++)
     if (*p == '_') *p = ' ';
 }
 
-unit_outcome quantity_read(const char *text, dimension d, double *value, char *hint, size_t hint_size) {
+unit_outcome quantity_read(const char *text, dimension d, double *value, char *hint,
+                           size_t hint_size) {
   if (hint_size) hint[0] = 0;
   while (*text == ' ') text++;
   const char *end = number_end(text);
@@ -315,7 +345,8 @@ typedef struct out_unit {
   double factor;
 } out_unit;
 
-static const out_unit lengths[] = {{"m", 1}, {"mm", 1e-3}, {"cm", 1e-2}, {"in", 0.0254}, {"ft", 0.3048}};
+static const out_unit lengths[] = {
+    {"m", 1}, {"mm", 1e-3}, {"cm", 1e-2}, {"in", 0.0254}, {"ft", 0.3048}};
 static const out_unit times[] = {{"s", 1}, {"min", 60}, {"h", 3600}, {"d", 86400}};
 static const char *const temperatures[] = {"degC", "degF", "K"};
 
@@ -356,7 +387,8 @@ int output_units_set(output_units *u, const char *dimension_text, const char *la
   }
   bool length = !strcmp(dimension_text, "length");
   if (!length && strcmp(dimension_text, "time")) return -1;
-  int i = length ? index_of(lengths, COUNT_OF(lengths), label) : index_of(times, COUNT_OF(times), label);
+  int i = length ? index_of(lengths, COUNT_OF(lengths), label)
+                 : index_of(times, COUNT_OF(times), label);
   if (i < 0) return -1;
   if (length)
     u->length = i;
