@@ -15,11 +15,16 @@ static int direction(const figure *f) {
   return isfinite(f->rises_to) ? 1 : -1;
 }
 
+/* A sum that ends a stage when it reaches a value is that value but for the last digits: the step
+   was made again to end there. */
+#define SAME_SUM 1e-8
+
 /* The level, shifted so that being at it counts as having reached it. */
 static double level(const figure_run *r) {
   const figure *f = r->figure;
-  double hair = f->of.is_figure ? 0 : SAME_TEMPERATURE;
-  return direction(f) > 0 ? f->rises_to - hair : f->falls_to + hair;
+  double wanted = direction(f) > 0 ? f->rises_to : f->falls_to;
+  double hair = f->of.is_figure ? SAME_SUM * fabs(wanted) : SAME_TEMPERATURE;
+  return wanted - direction(f) * hair;
 }
 
 static const char *check(const figure *f, const heat_case *c, const char **member) {
