@@ -51,7 +51,7 @@ static int column_trace(observer *o, const column *k) {
   trace_request r = {.kind = k->kind == COLUMN_PLACE ? TRACE_PLACE : TRACE_HEAT_FLOW,
                      .place = k->place,
                      .face = k->index};
-  return watch_add(&o->watch, &r);
+  return watch_request(&o->watch, &r);
 }
 
 static status init_history(observer *o, arena *memory, fault *f) {
@@ -106,7 +106,7 @@ static int figure_trace(observer *o, const figure *g) {
   } else if (g->kind->trace == TRACE_PLACE) {
     return -1; /* it looks at profiles */
   }
-  return watch_add(&o->watch, &r);
+  return watch_request(&o->watch, &r);
 }
 
 static status init_figures(observer *o, arena *memory, fault *f) {

@@ -90,7 +90,7 @@ static bool same_request(const trace_request *a, const trace_request *b) {
   return !indexed || a->place.index == b->place.index;
 }
 
-int watch_add(watch *w, const trace_request *request) {
+int watch_request(watch *w, const trace_request *request) {
   for (int i = 0; i < w->count; i++)
     if (same_request(&w->trace[i].request, request)) return i;
   if (w->count == MOST_TRACES) return -1;
@@ -102,7 +102,7 @@ int watch_add(watch *w, const trace_request *request) {
 
 int watch_add_place(watch *w, const place *p) {
   trace_request request = {.kind = TRACE_PLACE, .place = *p};
-  return watch_add(w, &request);
+  return watch_request(w, &request);
 }
 
 double watch_place(const trace *t, const mesh *m, const double *temperature) {

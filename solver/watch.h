@@ -35,7 +35,7 @@ typedef struct watch {
 MUST_USE status watch_init(watch *w, const heat_case *c, const mesh *m, arena *memory, fault *f);
 
 /* Index of a trace, made if it is new; -1 if there are too many. */
-int watch_add(watch *w, const trace_request *request);
+int watch_request(watch *w, const trace_request *request);
 int watch_add_place(watch *w, const place *p);
 
 /* Looks at the step that `s` has tried (or, still, at its state). */
