@@ -1,8 +1,9 @@
 /* The error contract: COUNT random cases, each at three numerical errors, each answer compared with
-   a march on a mesh 20 times finer with a hundredth of the tolerance, on the same stage ends. The
-   error that was asked for must hold for every row of the history of every place in 99 of 100
-   answers; few may be refused; energy must balance to 1e-10 in all. contract [COUNT [FIRST_SEED]];
-   with one seed, what it is and how far each place was off. */
+   a march on a mesh 20 times finer with a hundredth of the tolerance, on the same stage ends (less
+   fine where that would take too long; told). The error that was asked for must hold for every row
+   of the history of every place in 99 of 100 answers; few may be refused; energy must balance to
+   1e-10 in all. contract [COUNT [FIRST_SEED]]; with one seed, what it is and how far each place was
+   off. */
 #include "accuracy.h"
 #include "document.h"
 #include "random_case.h"
@@ -11,15 +12,17 @@
 #include <stdlib.h>
 #include <string.h>
 
-enum { LEVELS = 3, FINER = 20, MOST_REFERENCE_CELLS = 3600 };
+enum { LEVELS = 3, RULES = 5, MOST_REFERENCE_CELLS = 3900 };
+
+#define MOST_WORK 1.5e8 /* nodes x steps of a reference: some twenty seconds */
 
 static const double errors[LEVELS] = {0.5, 0.1, 0.02};
 static const double most_refused[LEVELS] = {0.02, 0.05, 0.15}; /* share */
-static const double least_held = 0.99;
+static const double least_held = 0.99, most_unjudged = 0.05;
 static const double most_residual = 1e-10;
 
 typedef struct score {
-  int asked, held, exceeded, refused, failed, unbalanced;
+  int asked, held, exceeded, unjudged, less_fine, refused, failed, unbalanced;
   double worst_residual;
 } score;
 
@@ -58,19 +61,42 @@ static double residual(const attempt *t) {
   return fabs(o->final_content - o->initial_content - in) / fmax(size, o->heat_moved);
 }
 
-/* The finer march; NULL if it cannot be had, with *f. */
-static attempt *finer_march(const accuracy *a, fault *f) {
+/* The march that judges: as fine as the work allowed lets it be. */
+static const struct {
+  int finer;      /* cells */
+  double sharper; /* tolerance */
+} references[] = {{20, 100}, {10, 30}, {5, 10}, {3, 5}};
+
+/* Ends a march that takes too long: go_on is called every 16 steps. */
+typedef struct budget {
+  double nodes, work;
+} budget;
+
+static status within_budget(void *self, double fraction) {
+  budget *b = self;
+  (void)fraction;
+  b->work += 16 * b->nodes;
+  return b->work > MOST_WORK ? STATUS_CANCELLED : STATUS_OK;
+}
+
+/* The finer march; NULL if it cannot be had within limits and work, with *f. */
+static attempt *finer_march(const accuracy *a, int index, fault *f) {
   march_plan plan = a->plan;
   double durations[LIMIT_STAGES];
   attempt *t = NULL;
-  plan.cells =
-      a->plan.cells * FINER < MOST_REFERENCE_CELLS ? a->plan.cells * FINER : MOST_REFERENCE_CELLS;
-  plan.tolerance = a->plan.tolerance / 100;
+  plan.cells = a->plan.cells * references[index].finer;
+  plan.tolerance = a->plan.tolerance / references[index].sharper;
+  if (plan.cells > MOST_REFERENCE_CELLS) {
+    fail(f, STATUS_BEYOND_LIMIT, "", "too many cells");
+    return NULL;
+  }
   plan_end_cells(&plan, a->the_case, a->properties);
   for (int i = 0; i < a->the_case->stages.count; i++)
     durations[i] = a->fine->outcome.stage[i].end - a->fine->outcome.stage[i].start;
   if (attempt_new(&t, a->the_case, &plan, a->properties, 1, NULL, f)) return NULL;
-  if (attempt_run(t, plan.tolerance, durations, NULL, 0, 1, f)) {
+  budget b = {.nodes = t->mesh.nodes};
+  solve_control control = {.go_on = within_budget, .self = &b};
+  if (attempt_run(t, plan.tolerance, durations, &control, 0, 1, f)) {
     attempt_free(t);
     return NULL;
   }
@@ -106,21 +132,25 @@ static void judge(score *s, const accuracy *a, uint64_t seed, const char *about)
     printf("      seed %llu at %g K: energy residual %.2e (%s)\n", (unsigned long long)seed,
            a->the_case->numerical_error, energy, about);
   }
-  attempt *finer = finer_march(a, &f);
-  double off =
-      finer ? history_difference(a->the_case, &a->fine->observer.history, &finer->observer.history)
-            : NAN;
-  if (off <= a->the_case->numerical_error)
-    s->held++;
-  else {
-    s->exceeded++;
-    printf("      seed %llu at %g K: off by %.3g K, estimate %.3g K, %d cells (%s)%s%s\n",
-           (unsigned long long)seed, a->the_case->numerical_error, off, a->estimate, a->plan.cells,
-           about, finer ? "" : ": no finer march: ", f.is);
+  attempt *finer = NULL;
+  int by = 0;
+  while (by < COUNT_OF(references) && !(finer = finer_march(a, by, &f))) by++;
+  if (!finer) {
+    s->unjudged++;
+    printf("      seed %llu at %g K: no finer march (%s), %d cells (%s)\n",
+           (unsigned long long)seed, a->the_case->numerical_error, f.is, a->plan.cells, about);
+    return;
   }
-  if (verbose)
-    printf("      estimate %.3g K, off %.3g K, %d cells, %d steps\n", a->estimate, off,
-           a->plan.cells, a->fine->outcome.steps);
+  s->less_fine += by > 0;
+  double off =
+      history_difference(a->the_case, &a->fine->observer.history, &finer->observer.history);
+  bool holds = off <= a->the_case->numerical_error;
+  holds ? s->held++ : s->exceeded++;
+  if (!holds || verbose)
+    printf("      seed %llu at %g K: off by %.3g K, estimate %.3g K, %d cells, %d steps, judged by "
+           "%d x (%s)\n",
+           (unsigned long long)seed, a->the_case->numerical_error, off, a->estimate, a->plan.cells,
+           a->fine->outcome.steps, references[by].finer, about);
   attempt_free(finer);
 }
 
@@ -158,14 +188,17 @@ static int tell_rule(const char *what, double error, bool holds) {
 }
 
 static int tell(const score *s, double error, double refusable) {
-  int answered = s->held + s->exceeded;
-  printf("%g K: %d cases, %d answered: %.1f %% hold; %.1f %% refused, %d failed; largest energy "
-         "residual %.1e\n",
-         error, s->asked, answered, answered ? 100.0 * s->held / answered : 0,
+  int judged = s->held + s->exceeded;
+  printf("%g K: %d cases, %d judged (%d of them by less than 20 x; %d could not be): %.1f %% hold; "
+         "%.1f %% refused, "
+         "%d failed; largest energy residual %.1e\n",
+         error, s->asked, judged, s->less_fine, s->unjudged, judged ? 100.0 * s->held / judged : 0,
          100.0 * s->refused / s->asked, s->failed, s->worst_residual);
   int failed = tell_rule("the stated error holds", error,
-                         answered && s->exceeded <= allowed(answered, 1 - least_held));
+                         judged && s->exceeded <= allowed(judged, 1 - least_held));
   failed += tell_rule("few are refused", error, s->refused <= allowed(s->asked, refusable));
+  failed +=
+      tell_rule("nearly all can be judged", error, s->unjudged <= allowed(s->asked, most_unjudged));
   failed += tell_rule("none fails", error, s->failed == 0);
   return failed + tell_rule("energy balances", error, s->unbalanced == 0);
 }
@@ -190,7 +223,7 @@ int main(int count, char **words) {
       try_case(&scores[level], first + (uint64_t)i, errors[level], materials);
   for (int level = 0; level < LEVELS; level++)
     failed += tell(&scores[level], errors[level], most_refused[level]);
-  printf("%d passed, %d failed\n", 4 * LEVELS - failed, failed);
+  printf("%d passed, %d failed\n", RULES * LEVELS - failed, failed);
   library_free(materials);
   return failed != 0;
 }
