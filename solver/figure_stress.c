@@ -10,8 +10,13 @@
 #include <string.h>
 
 typedef struct peak_stress {
-  double value, when, where;
+  double value;
+  double marked, when,
+      where; /* the value that set these: a later one must be larger by SAME_STRESS */
 } peak_stress;
+
+#define SAME_STRESS                                                                                \
+  1e-6 /* relative: a plateau is dated at its beginning, at the first of equal places */
 
 typedef struct state {
   elastic elastic;
@@ -119,11 +124,15 @@ static void begin(figure_run *r) {
   x->elastic.poisson = f->poisson;
   strain_table_init(&x->elastic.strain, &f->expansion);
   x->seen_until = x->when = x->before[0] = x->before[1] = NAN;
-  x->tension = x->compression = (peak_stress){-INFINITY, NAN, NAN};
+  x->tension = x->compression = (peak_stress){-INFINITY, -INFINITY, NAN, NAN};
 }
 
 static void keep(peak_stress *p, double value, double when, double where) {
-  if (value > p->value) *p = (peak_stress){value, when, where};
+  p->value = fmax(p->value, value);
+  if (!(value > p->marked * (1 + SAME_STRESS))) return;
+  p->marked = value;
+  p->when = when;
+  p->where = where;
 }
 
 /* Largest tension and compression at t, kept if larger than before; returned in now[2]. */

@@ -245,13 +245,17 @@ stress_state stress_at(const elastic *e, const section *s, const double *tempera
   return state_at(e, s->power, &b, &k, integral);
 }
 
+/* Of places that are equal but for round-off the first one stands. */
+#define SAME 1e-9
+
 static void compare(const stress_state *s, int components, stress_extreme *largest,
                     stress_extreme *smallest) {
   for (int i = 0; i < components; i++) {
-    if (!(s->component[i] <= largest->value))
-      *largest = (stress_extreme){s->component[i], s->position};
-    if (!(s->component[i] >= smallest->value))
-      *smallest = (stress_extreme){s->component[i], s->position};
+    double value = s->component[i];
+    if (!(value <= largest->value + SAME * fabs(largest->value)))
+      *largest = (stress_extreme){value, s->position};
+    if (!(value >= smallest->value - SAME * fabs(smallest->value)))
+      *smallest = (stress_extreme){value, s->position};
   }
 }
 
