@@ -10,6 +10,7 @@
 #include <string.h>
 
 enum { KG, METRE, SECOND, KELVIN, MOLE, RADIAN, BASES };
+enum { LARGEST_POWER = 9 };
 
 typedef struct unit {
   const char *symbol;
@@ -157,10 +158,15 @@ typedef struct parse {
   bool failed;
 } parse;
 
+/* A power that no quantity has makes the factor NAN, which unit_named refuses. */
 static void multiply(unit *a, const unit *b, int power) {
   for (int i = 0; i < abs(power); i++)
     a->factor = power > 0 ? a->factor * b->factor : a->factor / b->factor;
-  for (int i = 0; i < BASES; i++) a->power[i] = (signed char)(a->power[i] + power * b->power[i]);
+  for (int i = 0; i < BASES; i++) {
+    int sum = a->power[i] + power * b->power[i];
+    if (abs(sum) > LARGEST_POWER) a->factor = NAN;
+    a->power[i] = (signed char)(abs(sum) > LARGEST_POWER ? 0 : sum);
+  }
 }
 
 static const unit *longest_symbol(const char *text, size_t *length) {
@@ -190,10 +196,8 @@ static int exponent(parse *p) {
     if (!isdigit((unsigned char)*p->at)) p->failed = true;
   }
   if (!isdigit((unsigned char)*p->at)) return 1;
-  for (int digits = 0; isdigit((unsigned char)*p->at); p->at++, digits++) {
-    power = power * 10 + (*p->at - '0');
-    if (digits > 1) p->failed = true;
-  }
+  power = *p->at++ - '0';
+  if (!power || isdigit((unsigned char)*p->at)) p->failed = true;
   return sign * power;
 }
 
@@ -246,7 +250,7 @@ static unit parse_unit(parse *p, int depth) {
 static bool unit_named(const char *text, unit *out) {
   parse p = {.at = text};
   *out = parse_unit(&p, 0);
-  return !p.failed && *p.at == 0;
+  return !p.failed && *p.at == 0 && isfinite(out->factor) && out->factor > 0;
 }
 
 static bool is(const char *text, const char *a, const char *b, const char *c) {
@@ -258,7 +262,8 @@ unit_outcome quantity_in_unit(double number, const char *text, dimension d, doub
   if (!unit_named(text, &u)) return UNIT_UNKNOWN;
   if (d == DIMENSION_ANY) return UNIT_WRONG_DIMENSION;
   if (memcmp(u.power, powers[d], BASES)) return UNIT_WRONG_DIMENSION;
-  if (!strcmp(text, "%") && d != DIMENSION_NUMBER) return UNIT_WRONG_DIMENSION;
+  if (strchr(text, '%') && d != DIMENSION_NUMBER) return UNIT_WRONG_DIMENSION;
+  if (!isfinite(number * u.factor)) return UNIT_NOT_A_QUANTITY;
   *value = number * u.factor / kept_in(d);
   if (d != DIMENSION_TEMPERATURE) return UNIT_OK;
   if (is(text, "degC", "Cel", "\302\260C"))

@@ -132,8 +132,9 @@ Test(units, refuses_what_is_no_quantity) {
 }
 
 Test(units, refuses_a_second_number_where_a_unit_should_stand) {
-  static const char *const texts[] = {"5 10",  "5 10 mm", "1,5 mm", "3 mm 4",  "3 (mm",
-                                      "3 mm)", "3 m/",    "3 /m",   "2 ((m))("};
+  static const char *const texts[] = {
+      "5 10",       "5 10 mm",     "1,5 mm",     "3 mm 4",    "3 (mm", "3 mm)",   "3 m/",
+      "5 m7933879", "3 (m16)16.m", "3 ((m9)9)9", "1e300 km9", "3 /m",  "2 ((m))("};
   for (int i = 0; i < COUNT_OF(texts); i++) {
     double value = 42;
     cr_expect(quantity_read(texts[i], DIMENSION_LENGTH, &value, NULL, 0) != UNIT_OK,
