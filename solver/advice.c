@@ -133,9 +133,8 @@ static void advise_on_bore(advice *a) {
   }
   if (exchanges.count && bore < 0.5 * part_length(&c->part))
     advise(a, "/part/bore",
-           "the bore, %.4g mm, is narrower than half of its length, %.4g mm: gas and radiation "
-           "hardly reach its "
-           "middle, so that its exchange is less than on the outside",
+           "the bore, %.4g mm, is narrower than half of its length, %.4g mm: what flows and "
+           "radiates hardly reaches its middle, where the exchange is less than on the outside",
            bore * 1e3, part_length(&c->part) * 1e3);
 }
 
