@@ -3,7 +3,7 @@
 
 #include "json_out.h"
 #include "kind.h"
-#include "limits.h"
+#include "limit.h"
 
 #include <math.h>
 #include <stdio.h>

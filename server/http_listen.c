@@ -3,9 +3,9 @@
 
 #include <errno.h>
 #include <netdb.h>
-#include <netinet/in.h>
 #include <stdbool.h>
 #include <stdio.h>
+#include <stdlib.h>
 #include <string.h>
 #include <sys/socket.h>
 #include <unistd.h>
@@ -41,12 +41,12 @@ static int open_socket(const struct addrinfo *a) {
 }
 
 static int port_of(int s) {
-  struct sockaddr_storage address = {0};
+  struct sockaddr_storage address;
   socklen_t size = sizeof address;
+  char service[16] = "0";
   if (getsockname(s, (struct sockaddr *)&address, &size) != 0) return 0;
-  if (address.ss_family == AF_INET6)
-    return ntohs(((struct sockaddr_in6 *)(void *)&address)->sin6_port);
-  return ntohs(((struct sockaddr_in *)(void *)&address)->sin_port);
+  getnameinfo((struct sockaddr *)&address, size, NULL, 0, service, sizeof service, NI_NUMERICSERV);
+  return atoi(service);
 }
 
 int http_listen(const char *where, int *port, char *message, size_t size) {

@@ -213,6 +213,7 @@ int read_solve(struct reader *r, void *json, document *d) {
   r->the_case = arena_take(&memory, sizeof(heat_case));
   if (!r->the_case) r->no_memory = true;
   int faults = r->faults->found;
+  r->given = json;
   r->root = r->no_memory ? NULL : expand_document(r, json);
   if (r->root && !r->no_memory) {
     read_members(r);

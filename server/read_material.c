@@ -34,21 +34,28 @@ static bool table_to_pieces(reader *r, const table *t, curve *out) {
   return n > 0;
 }
 
-static bool tabled(reader *r, const json_t *rows, dimension d, bool positive, curve *out) {
-  table t;
-  if (!read_table(r, rows, DIMENSION_TEMPERATURE, d, false, &t)) return false;
-  if (t.count > LIMIT_PIECES) {
-    fault_here(r, NULL, "has %d rows; the limit is %d", t.count, LIMIT_PIECES);
+static bool check_rows(reader *r, const table *t, const json_t *rows, bool positive) {
+  if (t->count > LIMIT_PIECES) {
+    fault_here(r, NULL, "has %d rows; the limit is %d", t->count, LIMIT_PIECES);
     return false;
   }
-  for (int i = 0; i < t.count; i++)
-    if (positive ? !(t.y[i] > 0) : !isfinite(t.y[i])) {
-      size_t before = path_push_index(r, (size_t)i);
-      fault_here(r, json_array_get(rows, (size_t)i), "must be greater than 0");
-      path_pop(r, before);
-      return false;
-    }
-  return table_to_pieces(r, &t, out);
+  for (int i = 0; positive && i < t->count; i++) {
+    if (t->y[i] > 0) continue;
+    size_t before = path_push_index(r, (size_t)i);
+    fault_here(r, json_array_get(rows, (size_t)i), "must be greater than 0");
+    path_pop(r, before);
+    return false;
+  }
+  return true;
+}
+
+static bool tabled(reader *r, const json_t *object, dimension d, bool positive, curve *out) {
+  table t;
+  if (!read_table_of(r, object, "table", DIMENSION_TEMPERATURE, d, &t)) return false;
+  size_t before = path_push(r, "table");
+  bool good = check_rows(r, &t, json_object_get(object, "table"), positive);
+  path_pop(r, before);
+  return good && table_to_pieces(r, &t, out);
 }
 
 static bool read_piece(reader *r, const json_t *v, piece *p) {
@@ -152,11 +159,12 @@ static bool read_shape_of_curve(reader *r, const json_t *v, dimension d, bool po
     return read_ranged(r, v, positive ? &row : &any, d, &value) && one_piece(r, value, out);
   }
   const char *only = json_object_iter_key(json_object_iter((json_t *)v));
-  for (int i = 0; names[i]; i++) {
-    const json_t *inner = json_object_get(v, names[i]);
-    if (!inner || json_object_size(v) != 1) continue;
-    size_t before = path_push(r, names[i]);
-    bool good = i ? pieced(r, inner, out) : tabled(r, inner, d, positive, out);
+  bool units = json_object_get(v, "units") != NULL;
+  if (json_object_get(v, "table") && json_object_size(v) == 1u + units)
+    return tabled(r, v, d, positive, out);
+  if (json_object_get(v, "pieces") && json_object_size(v) == 1) {
+    size_t before = path_push(r, "pieces");
+    bool good = pieced(r, json_object_get(v, "pieces"), out);
     path_pop(r, before);
     return good;
   }
@@ -180,12 +188,12 @@ bool read_curve(reader *r, const json_t *v, dimension d, bool positive, curve *o
 static bool read_enthalpy(reader *r, const json_t *v, material *m) {
   const json_t *rows = json_is_object(v) ? json_object_get(v, "table") : NULL;
   table t;
-  if (!rows || json_object_size(v) != 1) {
+  if (!rows || json_object_size(v) != 1u + (json_object_get(v, "units") != NULL)) {
     fault_here(r, v, "must be {\"table\": [[T, enthalpy], ...]}");
     return false;
   }
+  bool good = read_table_of(r, v, "table", DIMENSION_TEMPERATURE, DIMENSION_ENTHALPY, &t);
   size_t before = path_push(r, "table");
-  bool good = read_table(r, rows, DIMENSION_TEMPERATURE, DIMENSION_ENTHALPY, false, &t);
   if (good && t.count < 2) {
     fault_here(r, NULL, "must have at least two rows");
     good = false;

@@ -34,6 +34,12 @@ static bool read_column(reader *r, const json_t *v, column *out) {
     return true;
   }
   out->index = series_named(r->the_case, text);
+  if (out->index < 0 && strchr(text, '/')) { /* a log's column */
+    series s;
+    if (!read_log_column(r, of, DIMENSION_TEMPERATURE, &s)) return false;
+    out->index = add_named_series(r, text, DIMENSION_TEMPERATURE, &s);
+    if (out->index < 0) return false;
+  }
   if (out->index >= 0) {
     out->kind = COLUMN_SERIES;
     return true;

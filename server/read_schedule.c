@@ -6,18 +6,17 @@
 
 /* ---- the start ---- */
 
-static void read_profile(reader *r, const json_t *v, start *out) {
+static void read_profile(reader *r, const json_t *object, start *out) {
   const part *p = &r->the_case->part;
   double origin, extent = p->shape->extent(p, &origin);
-  size_t before = path_push(r, "profile");
   out->kind = START_PROFILE;
-  if (read_table(r, v, DIMENSION_LENGTH, DIMENSION_TEMPERATURE, false, &out->profile)) {
-    double last = out->profile.x[out->profile.count - 1];
-    if (out->profile.x[0] < 0) fault_here(r, NULL, "depths must be at least 0");
-    if (isfinite(extent) && last > extent * (1 + 1e-9))
-      fault_here(r, NULL, "goes to a depth of %.6g m; the section ends at %.6g m", last, extent);
-  }
-  path_pop(r, before);
+  if (!read_table_of(r, object, "profile", DIMENSION_LENGTH, DIMENSION_TEMPERATURE, &out->profile))
+    return;
+  double last = out->profile.x[out->profile.count - 1];
+  if (out->profile.x[0] < 0) fault_at(r, "profile", NULL, "depths must be at least 0");
+  if (isfinite(extent) && last > extent * (1 + 1e-9))
+    fault_at(r, "profile", NULL, "goes to a depth of %.6g m; the section ends at %.6g m", last,
+             extent);
 }
 
 static void read_steady_start(reader *r, const json_t *v, start *out) {
@@ -45,8 +44,9 @@ void read_start(reader *r, const json_t *v) {
   *s = (start){.kind = START_PER_LAYER, .temperature = NAN};
   if (!v) return;
   if (json_is_object(v)) {
-    if (!check_members(r, v, &start_type, NULL)) return;
-    if (json_object_get(v, "profile")) read_profile(r, json_object_get(v, "profile"), s);
+    bool units = json_object_get(v, "profile") && json_object_get(v, "units");
+    if (!(units && json_object_size(v) == 2) && !check_members(r, v, &start_type, NULL)) return;
+    if (json_object_get(v, "profile")) read_profile(r, v, s);
     if (json_object_get(v, "steady")) read_steady_start(r, json_object_get(v, "steady"), s);
     return;
   }

@@ -92,6 +92,17 @@ static bool read_units(reader *r, const json_t *object, column_units *units) {
   return good;
 }
 
+bool read_table_of(reader *r, const json_t *object, const char *member, dimension x, dimension y,
+                   table *out) {
+  column_units units;
+  dimension d[2] = {x, y};
+  if (!read_units(r, object, &units)) return false;
+  size_t before = path_push(r, member);
+  bool good = read_rows(r, json_object_get(object, member), &units, d, false, out);
+  path_pop(r, before);
+  return good;
+}
+
 /* ---- forms ---- */
 
 static bool constant(reader *r, const json_t *v, dimension d, series *out) {
@@ -339,6 +350,51 @@ bool read_coefficient(reader *r, const json_t *v, coefficient *out) {
   return good;
 }
 
+/* ---- named series ---- */
+
+/* What a series is used for decides its dimension: looked for where {"series": NAME} stands. */
+static dimension dimension_of_use(const json_t *v, const char *member, const char *name,
+                                  int depth) {
+  static const struct {
+    const char *member;
+    dimension d;
+  } uses[] = {{"h", DIMENSION_COEFFICIENT},
+              {"flux", DIMENSION_FLUX},
+              {"heat_generation", DIMENSION_GENERATION}};
+  const char *used = json_is_object(v) ? json_string_value(json_object_get(v, "series")) : NULL;
+  if (used && !strcmp(used, name)) {
+    for (int i = 0; i < COUNT_OF(uses); i++)
+      if (!strcmp(uses[i].member, member)) return uses[i].d;
+    return DIMENSION_TEMPERATURE;
+  }
+  dimension found = DIMENSION_ANY;
+  const char *key;
+  json_t *value;
+  if (depth > 2 * MOST_DEPTH) return found;
+  json_object_foreach((json_t *)v, key, value) {
+    if (found == DIMENSION_ANY) found = dimension_of_use(value, key, name, depth + 1);
+  }
+  for (size_t i = 0; json_is_array(v) && found == DIMENSION_ANY && i < json_array_size(v); i++)
+    if (!json_is_number(json_array_get(v, i)))
+      found = dimension_of_use(json_array_get(v, i), member, name, depth + 1);
+  return found;
+}
+
+int add_named_series(reader *r, const char *name, dimension d, const series *s) {
+  heat_case *c = r->the_case;
+  if (!c->series.items && !(c->series.items = take(r, LIMIT_NAMED_SERIES, sizeof(named_series))))
+    return -1;
+  if (c->series.count == LIMIT_NAMED_SERIES) {
+    fault_here(r, NULL, "more than %d series", LIMIT_NAMED_SERIES);
+    return -1;
+  }
+  named_series *item = &c->series.items[c->series.count];
+  *item = (named_series){
+      .name = arena_text(r->memory, name, strlen(name)), .dimension = d, .series = *s};
+  if (!item->name) r->no_memory = true;
+  return item->name ? c->series.count++ : -1;
+}
+
 void read_named_series(reader *r, const json_t *v) {
   if (!must_be_object(r, v)) return;
   size_t count = json_object_size(v);
@@ -346,20 +402,15 @@ void read_named_series(reader *r, const json_t *v) {
     fault_here(r, NULL, "has %zu series; the limit is %d", count, LIMIT_NAMED_SERIES);
     return;
   }
-  named_series *items = take(r, count, sizeof *items);
-  if (!items) return;
   const char *name;
   json_t *value;
-  int n = 0;
   json_object_foreach((json_t *)v, name, value) {
     size_t before = path_push(r, name);
+    series s;
+    dimension d = dimension_of_use(r->given, "", name, 0);
+    if (d == DIMENSION_ANY) d = DIMENSION_TEMPERATURE;
     if (!is_name(name)) fault_here(r, NULL, "a name has 1 to 64 letters, digits, _ or -");
-    items[n].name = arena_text(r->memory, name, strlen(name));
-    if (!items[n].name) r->no_memory = true;
-    items[n].dimension = DIMENSION_TEMPERATURE;
-    if (read_series(r, value, DIMENSION_TEMPERATURE, -INFINITY, INFINITY, &items[n].series)) n++;
+    if (read_series(r, value, d, -INFINITY, INFINITY, &s)) add_named_series(r, name, d, &s);
     path_pop(r, before);
   }
-  r->the_case->series.count = n;
-  r->the_case->series.items = items;
 }

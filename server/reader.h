@@ -4,7 +4,7 @@
 #define CORESOAK_READER_H
 
 #include "document.h"
-#include "limits.h"
+#include "limit.h"
 #include "shape.h"
 
 #include <jansson.h>
@@ -20,6 +20,7 @@ typedef struct reader {
   arena *memory;       /* of the case */
   heat_case *the_case; /* being filled */
   json_t *root;        /* the finished document: inputs and named series put in place */
+  const json_t *given; /* the document as it came */
   char path[LONGEST_PATH];
   size_t length;
   bool no_memory;
@@ -71,6 +72,9 @@ bool read_quantity(reader *r, const json_t *v, dimension d, double *out);
 bool read_ranged(reader *r, const json_t *v, const parameter *row, dimension d, double *out);
 bool read_contact(reader *r, const json_t *v, double *out);
 bool read_table(reader *r, const json_t *v, dimension x, dimension y, bool strict, table *out);
+/* The table that is a member of an object, whose "units" may name the columns' units. */
+bool read_table_of(reader *r, const json_t *object, const char *member, dimension x, dimension y,
+                   table *out);
 bool read_series(reader *r, const json_t *v, dimension d, double least, double most, series *out);
 bool read_coefficient(reader *r, const json_t *v, coefficient *out);
 bool read_curve(reader *r, const json_t *v, dimension d, bool positive, curve *out);
@@ -91,6 +95,8 @@ void read_until(reader *r, const json_t *v, until *out);
 void read_figures(reader *r, const json_t *v);
 void read_output(reader *r, const json_t *v);
 void read_named_series(reader *r, const json_t *v);
+int add_named_series(reader *r, const char *name, dimension d,
+                     const series *s); /* index, -1 after a fault */
 
 /* ---- names ---- */
 

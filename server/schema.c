@@ -4,7 +4,7 @@
 #include "command.h"
 #include "figure.h"
 #include "json_out.h"
-#include "limits.h"
+#include "limit.h"
 #include "schema_writer.h"
 #include "shape.h"
 #include "units.h"

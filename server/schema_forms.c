@@ -2,7 +2,7 @@
    properties, places. */
 #include "case.h"
 #include "json_out.h"
-#include "limits.h"
+#include "limit.h"
 #include "schema_writer.h"
 
 #include <stdio.h>

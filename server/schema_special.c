@@ -4,7 +4,7 @@
 
 #include "case.h"
 #include "json_out.h"
-#include "limits.h"
+#include "limit.h"
 
 #include <stdio.h>
 #include <string.h>

@@ -3,7 +3,7 @@
 #define CORESOAK_WRITE_PARTS_H
 
 #include "json_out.h"
-#include "limits.h"
+#include "limit.h"
 #include "write_result.h"
 
 typedef struct writing {

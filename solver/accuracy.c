@@ -10,9 +10,13 @@
 #define COARSE_TOLERANCE 8.0   /* of the coarse twin's steps over the fine run's */
 #define MOST_WORK        1.2e8 /* nodes x steps of one run: some ten seconds on one core */
 #define TABLE_INTERVALS  512
-#define SPACE_SHARE      0.7 /* of the numerical error: what a refined plan aims at for mesh and steps \
-                              */
+#define SPACE_SHARE                                                                                \
+  0.7 /* of the numerical error: what a refined plan aims at for mesh and steps                    \
+       */
 #define TIME_SHARE 0.25
+#define LEAST_SHARE                                                                                \
+  0.1 /* two runs that agree in one figure by chance are not believed beyond this share of the     \
+         estimate */
 
 enum { MOST_REFINEMENTS = 9, MOST_WIDENINGS = 8 };
 
@@ -126,13 +130,12 @@ static bool widen_tables(accuracy *a, status *bad, fault *f) {
   return !*bad;
 }
 
-double accuracy_figure_error(const accuracy *a, int figure, const figure_value *fine,
+double accuracy_figure_error(const accuracy *a, const figure_value *fine,
                              const figure_value *coarse) {
   if (!fine->found) return NAN;
-  (void)figure;
   double by_place = fine->sensitivity * a->estimate;
   if (!coarse->found) return fine->sensitivity > 0 ? by_place : INFINITY;
-  double error = fabs(fine->value - coarse->value);
+  double error = fmax(fabs(fine->value - coarse->value), LEAST_SHARE * by_place);
   for (int i = 0; i < fine->parts && i < coarse->parts; i++)
     error = fmax(error, fabs(fine->part[i].value - coarse->part[i].value));
   return error;

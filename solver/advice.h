@@ -3,7 +3,7 @@
 #ifndef CORESOAK_ADVICE_H
 #define CORESOAK_ADVICE_H
 
-#include "limits.h"
+#include "limit.h"
 #include "solve.h"
 
 /* One stage. A sink is the temperature that a face is taken towards: furnace, medium, surroundings,

@@ -1,7 +1,7 @@
 /* case.c: the members of every object of a case, as data. */
 #include "case.h"
 
-#include "limits.h"
+#include "limit.h"
 #include "shape.h"
 
 #include <math.h>

@@ -107,6 +107,7 @@ static void hold_node(conduction *c, int end, double t, double *state_rate, bool
   const mesh *m = c->mesh;
   int node = end_node(m, end), inner = end ? node - 1 : node + 1;
   c->heat[end] = -state_rate[node];
+  c->heat_node[end] = inner;
   state_rate[node] = 0;
   if (!linearise) return;
   double link = m->conductance[end ? inner : node], slope = c->slope[node];
@@ -120,7 +121,6 @@ static void hold_node(conduction *c, int end, double t, double *state_rate, bool
   c->by_time[inner] += link * theta_rate;
   c->heat_by_time[end] = link * theta_rate - c->by_time[node];
   c->heat_by_state[end] = -link * c->slope[inner];
-  c->heat_node[end] = inner;
   c->by_time[node] = 0;
   c->diagonal[node] = 0;
   c->upper[node] = c->lower[node] = 0;

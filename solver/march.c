@@ -13,6 +13,10 @@
 #define SMALLEST_STEP     1e-11 /* of the stage's time, relative; below it the march has failed */
 #define LARGEST_TOLERANCE 1.0   /* K */
 
+#define LANDING 1e-9 /* of the step: how far behind the moment of an event its end may lie */
+
+enum { MOST_LANDINGS = 120 };
+
 void march_conditions(conduction *system, const faces *given) {
   const mesh *m = system->mesh;
   system->condition[0] = m->solid && m->power ? NULL : &given->condition[0];
@@ -211,19 +215,25 @@ static status look_up_from_work(leg *l, fault *f) {
   return s ? stopped(l, f, s, status_message(s)) : STATUS_OK;
 }
 
-/* Lands on the moment at which `until` is fulfilled, if that is within the step tried. */
+/* Lands on the moment at which `until` is fulfilled, if that is within the step tried. A step of
+   another length ends a little elsewhere than the interpolant said, so it is tried until its own
+   end is the moment. */
 static status land_on_event(leg *l, double *h, fault *f) {
   stepper *s = l->s;
+  const march_watch *w = l->request->watch;
   if (l->request->durations || l->stage->end != STAGE_UNTIL) return STATUS_OK;
-  double at = l->request->watch->event(l->request->watch->self, s);
+  double at = w->event(w->self, s), shortest = SMALLEST_STEP * (1 + s->t), longer = 0;
   if (!(at <= s->t + *h)) return STATUS_OK;
   l->fulfilled = true;
-  double shorter = at - s->t;
-  if (shorter >= *h * (1 - 1e-12)) return STATUS_OK;
-  if (shorter < SMALLEST_STEP * (1 + s->t)) shorter = SMALLEST_STEP * (1 + s->t);
-  *h = shorter;
-  return stepper_try(s, *h) < 0 ? stopped(l, f, STATUS_NOT_FINITE, "a value is not finite")
-                                : STATUS_OK;
+  for (int i = 0; i < MOST_LANDINGS; i++) {
+    bool reached = at <= s->t + *h;
+    if (reached && (*h <= shortest || s->t + *h - at <= LANDING * *h)) return STATUS_OK;
+    longer = reached ? 0 : fmax(2 * longer, 0.1 * LANDING * *h);
+    *h = reached ? fmax(at - s->t, shortest) : *h + fmin(longer, 0.01 * *h);
+    if (stepper_try(s, *h) < 0) return stopped(l, f, STATUS_NOT_FINITE, "a value is not finite");
+    at = w->event(w->self, s);
+  }
+  return STATUS_OK;
 }
 
 static status march_interval(leg *l, double to, fault *f) {

@@ -4,7 +4,7 @@
 #ifndef CORESOAK_MARCH_H
 #define CORESOAK_MARCH_H
 
-#include "limits.h"
+#include "limit.h"
 #include "result.h"
 #include "solve.h"
 #include "step.h"

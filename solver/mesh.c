@@ -5,7 +5,7 @@
 #include "mesh.h"
 
 #include "elementary.h"
-#include "limits.h"
+#include "limit.h"
 #include "shape.h"
 
 #include <math.h>

@@ -226,13 +226,19 @@ static void history_row(observer *o, double t) {
                                                : watch_value(&o->watch, o->column_trace[i], t);
 }
 
+/* An instant that falls on the end of a step belongs to that step, just before a jump; unless the
+ * end is taken anyway. */
+static bool due_in_step(double t, double t1, bool end_is_taken) {
+  return SAME_TIME(t, t1) ? !end_is_taken : t < t1;
+}
+
 static void history_step(observer *o, double t1, bool ends) {
   if (o->the_case->output.history.times == OUTPUT_NONE) return;
   while (o->due_next < o->dues) {
     double t = o->due[o->due_next] - o->start;
-    if (t > t1 || (ends && SAME_TIME(t, t1))) break;
+    if (!due_in_step(t, t1, ends)) break;
     bool again = o->history.rows && o->history_time[o->history.rows - 1] == o->due[o->due_next];
-    if (!again) history_row(o, t < 0 ? 0 : t);
+    if (!again) history_row(o, fmin(fmax(t, 0), t1));
     if (!again) o->history_time[o->history.rows - 1] = o->due[o->due_next];
     o->due_next++;
   }
@@ -261,8 +267,8 @@ static void field_step(observer *o, double t1, bool ends) {
   bool at_end = ends && field_at_end(o);
   while (o->field_due_next < o->field_dues) {
     double t = o->field_due[o->field_due_next] - o->start;
-    if (t > t1 || (at_end && SAME_TIME(t, t1))) break;
-    take_field(o, t < 0 ? 0 : t);
+    if (!due_in_step(t, t1, at_end)) break;
+    take_field(o, fmin(fmax(t, 0), t1));
     o->field_due_next++;
   }
   if (!at_end) return;

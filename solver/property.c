@@ -6,7 +6,7 @@
    1/(rho c), dtheta/dH = k/(rho c). */
 #include "property.h"
 
-#include "limits.h"
+#include "limit.h"
 #include "physics.h"
 
 #include <math.h>
@@ -149,7 +149,7 @@ static double sharp_heat(const material *m, double temperature) {
 }
 
 static double stretch_heat(const stretch *s) {
-  enum { PANELS = 16 };
+  enum { PANELS = 64 };
   double sum = 0, width = (s->to - s->from) / PANELS;
   for (int i = 0; i < PANELS; i++)
     sum += gauss(capacity, s, s->from + i * width, s->from + (i + 1) * width);

@@ -20,7 +20,7 @@
 #define CORESOAK_STRESS_H
 
 #include "figure.h"
-#include "limits.h"
+#include "limit.h"
 
 /* Thermal strain against temperature: integrals of alpha up to the start of each piece. */
 typedef struct strain_table {

@@ -2,7 +2,7 @@
 #ifndef CORESOAK_UNTIL_H
 #define CORESOAK_UNTIL_H
 
-#include "limits.h"
+#include "limit.h"
 #include "watch.h"
 
 /* How a stage ended: kept so that the twin run can tell the error of the end. */

@@ -1,4 +1,4 @@
-/* limits.h: every number that a caller can grow, with its largest value. The reader refuses what is
+/* limit.h: every number that a caller can grow, with its largest value. The reader refuses what is
    beyond (422 with the limit and the value); the solver relies on it. */
 #ifndef CORESOAK_LIMITS_H
 #define CORESOAK_LIMITS_H
