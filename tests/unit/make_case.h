@@ -4,7 +4,8 @@
 #define CORESOAK_TESTS_MAKE_CASE_H
 
 #include "case.h"
-#include "limits.h"
+#include "figure.h"
+#include "limit.h"
 #include "shape.h"
 
 #include <math.h>
@@ -234,6 +235,24 @@ static inline int add_column(made *m, column_kind kind, place of, int index) {
   m->column[i] = (column){.kind = kind, .name = "column", .place = of, .index = index};
   r->of.items = m->column;
   return i;
+}
+
+/* A figure of a kind that takes a place; its other members are unset. */
+static inline figure *add_figure(made *m, const char *kind, place of) {
+  static const char *const names[] = {"f1", "f2", "f3", "f4", "f5", "f6", "f7", "f8"};
+  int i = m->the_case.figures.count++;
+  m->figure[i] = (figure){.name = names[i],
+                          .kind = figure_kind_named(kind),
+                          .of = {.place = of},
+                          .rises_to = NAN,
+                          .falls_to = NAN,
+                          .above = NAN,
+                          .below = NAN,
+                          .from = NAN,
+                          .to = NAN,
+                          .over = NAN,
+                          .face = -1};
+  return &m->figure[i];
 }
 
 static inline void history_every(made *m, double every) {
