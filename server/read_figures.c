@@ -100,12 +100,12 @@ static void read_figure(reader *r, const json_t *v, figure *f) {
   read_object(r, v, &figure_type, &f->kind->parameters, skip, f);
   read_levels(r, v, &f->kind->parameters, watched_dimension(r, f, good), (char *)f);
   if (!f->name) f->name = "";
+  if (json_object_get(v, "require") && !(f->kind->takes_place && !good))
+    read_requirement(r, json_object_get(v, "require"), f);
   if (r->faults->found == faults && f->kind->check) {
     const char *member = NULL, *wrong = f->kind->check(f, r->the_case, &member);
     if (wrong) fault_at(r, member, member ? json_object_get(v, member) : NULL, "%s", wrong);
   }
-  if (json_object_get(v, "require") && !(f->kind->takes_place && !good))
-    read_requirement(r, json_object_get(v, "require"), f);
 }
 
 void read_figures(reader *r, const json_t *v) {

@@ -123,6 +123,9 @@ static status fill_stages(heat_result *r, const accuracy *a, fault *f) {
   return STATUS_OK;
 }
 
+/* A stage that ends on a figure lands within this of its value. */
+#define ROUND_OFF 1e-8
+
 static void judge(figure_result *g, const requirement *need) {
   double value = g->value.value;
   if (need->which >= 0 && need->which < g->value.parts) value = g->value.part[need->which].value;
@@ -133,7 +136,7 @@ static void judge(figure_result *g, const requirement *need) {
   if (isfinite(need->at_least)) margin = fmin(margin, value - need->at_least);
   if (isfinite(need->at_most)) margin = fmin(margin, need->at_most - value);
   g->margin = margin;
-  g->met = margin >= 0;
+  g->met = margin >= -ROUND_OFF * fabs(value);
   g->close = isfinite(g->error) ? fabs(margin) <= g->error : true;
 }
 
@@ -275,8 +278,9 @@ status solve_case(const heat_case *c, const solve_control *control, heat_result 
 
 /* ---- the cost before solving ---- */
 
-#define STEPS_PER_STAGE 70.0 /* of a usual stage at 0.5 K; grows with the fourth root of 1/error   \
-                              */
+#define STEPS_PER_STAGE                                                                            \
+  70.0 /* of a usual stage at 0.5 K; grows with the fourth root of 1/error                         \
+        */
 #define SECONDS_PER_UNKNOWN 2.2e-7 /* one step of one unknown, on one core of 2024 */
 
 static double breaks_of(const stage *g, const heat_case *c) {
