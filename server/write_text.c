@@ -31,6 +31,13 @@ static void write_duration(buffer *b, double seconds) {
   }
 }
 
+/* Four digits, or tenths where those are finer: what a reader takes in. */
+static void write_short(buffer *b, double value) {
+  double step = 10, size = fabs(value);
+  for (double limit = 100; size < limit && step < 1e8; limit /= 10) step *= 10;
+  json_out_number(b, size < 1e9 ? round(value * step) / step : value, INFINITY);
+}
+
 /* Stress, energy and power run over many sizes: told in k, M or G of their unit. */
 static bool takes_prefix(const char *label) {
   return strncmp(label, "Pa", 2) == 0 || strcmp(label, "J") == 0 || strcmp(label, "W") == 0 ||
@@ -44,33 +51,47 @@ static void write_prefixed(buffer *b, double value, const char *label) {
   } steps[] = {{1e9, "G"}, {1e6, "M"}, {1e3, "k"}, {0, ""}};
   int i = 0;
   while (fabs(value) < steps[i].factor) i++;
-  json_out_number(b, i < 3 ? value / steps[i].factor : value, INFINITY);
+  write_short(b, i < 3 ? value / steps[i].factor : value);
   buffer_format(b, " %s%s", steps[i].prefix, label);
 }
 
+static void write_label(writing *w, const char *label) {
+  if (strcmp(label, "1") != 0) buffer_format(w->b, " %s", label);
+}
+
 /* A value with its unit; a time as a duration. */
-static void write_quantity(writing *w, double value, dimension d, double error) {
+static void write_quantity(writing *w, double value, dimension d) {
   const char *label = quantity_label(d, w->units);
   if (d == DIMENSION_TIME) {
     write_duration(w->b, value);
   } else if (takes_prefix(label)) {
     write_prefixed(w->b, quantity_out(value, d, w->units), label);
   } else {
-    write_value(w, value, d, error);
-    buffer_format(w->b, " %s", label);
+    write_short(w->b, quantity_out(value, d, w->units));
+    write_label(w, label);
   }
 }
 
-/* A difference or an error of such a value. */
-static void write_spread(writing *w, double value, dimension d, double error) {
-  const char *label =
-      quantity_label(d == DIMENSION_TEMPERATURE ? DIMENSION_DIFFERENCE : d, w->units);
-  if (d == DIMENSION_TIME || takes_prefix(label)) {
-    write_quantity(w, value, d, error);
-    return;
+/* The dimension of a difference of two such values. */
+static dimension of_difference(dimension d) {
+  return d == DIMENSION_TEMPERATURE ? DIMENSION_DIFFERENCE : d;
+}
+
+/* " ± 0.12 K" */
+static void write_uncertainty(writing *w, double error, dimension of) {
+  dimension d = of_difference(of);
+  const char *label = quantity_label(d, w->units);
+  if (!isfinite(error) || error <= 0) return;
+  buffer_text(w->b, " ± ");
+  if (d == DIMENSION_TIME && error < 2 * MINUTE) {
+    json_out_error(w->b, error);
+    buffer_text(w->b, " s");
+  } else if (d == DIMENSION_TIME || takes_prefix(label)) {
+    write_quantity(w, error, d);
+  } else {
+    write_error(w, error, d);
+    write_label(w, label);
   }
-  write_difference(w, value, d, error);
-  buffer_format(w->b, " %s", label);
 }
 
 static const char *ending_words(stage_ended e) {
@@ -92,31 +113,32 @@ static void write_stage_lines(writing *w) {
     buffer_text(w->b, " to ");
     write_clock(w->b, s->end);
     buffer_format(w->b, ", %s", ending_words(s->ended_by));
-    if (s->ended_by == ENDED_UNTIL) {
-      buffer_text(w->b, " (± ");
-      write_duration(w->b, s->end_error);
-      buffer_text(w->b, ")");
-    }
+    if (s->ended_by == ENDED_UNTIL) write_uncertainty(w, s->end_error, DIMENSION_TIME);
     buffer_text(w->b, "\n");
   }
 }
 
-static void write_bound(writing *w, const char *words, double bound, dimension d) {
-  if (isnan(bound)) return;
-  buffer_text(w->b, words);
-  write_quantity(w, bound, d, INFINITY);
+static void write_bounds(writing *w, const requirement *q, dimension d) {
+  if (isfinite(q->at_least)) {
+    buffer_text(w->b, " at least ");
+    write_quantity(w, q->at_least, d);
+  }
+  if (isfinite(q->at_least) && isfinite(q->at_most)) buffer_text(w->b, " and");
+  if (isfinite(q->at_most)) {
+    buffer_text(w->b, " at most ");
+    write_quantity(w, q->at_most, d);
+  }
 }
 
 static void write_judgement(writing *w, const figure_result *f, const requirement *q) {
   buffer_text(w->b, "; required");
   if (q->which >= 0 && q->which < f->value.parts)
     buffer_format(w->b, " %s", f->value.part[q->which].name);
-  write_bound(w, " at least ", q->at_least, f->dimension);
-  write_bound(w, " at most ", q->at_most, f->dimension);
+  write_bounds(w, q, f->dimension);
   buffer_text(w->b, f->met ? ": met" : ": NOT MET");
   if (!isfinite(f->margin)) return;
   buffer_text(w->b, f->met ? " with " : " by ");
-  write_spread(w, fabs(f->margin), f->dimension, f->error);
+  write_quantity(w, fabs(f->margin), of_difference(f->dimension));
   if (f->met) buffer_text(w->b, " to spare");
   if (f->close) buffer_text(w->b, ", which is within the numerical error");
 }
@@ -124,7 +146,7 @@ static void write_judgement(writing *w, const figure_result *f, const requiremen
 static void write_parts_of_figure(writing *w, const figure_result *f) {
   for (int i = 0; i < f->value.parts; i++) {
     buffer_format(w->b, "%s%s ", i ? ", " : "", f->value.part[i].name);
-    write_quantity(w, f->value.part[i].value, f->dimension, f->error);
+    write_quantity(w, f->value.part[i].value, f->dimension);
     if (isnan(f->value.part[i].when)) continue;
     buffer_text(w->b, " at ");
     write_clock(w->b, f->value.part[i].when);
@@ -136,11 +158,8 @@ static void write_figure_value(writing *w, const figure_result *f) {
     write_parts_of_figure(w, f);
     return;
   }
-  write_quantity(w, f->value.value, f->dimension, f->error);
-  if (isfinite(f->error) && f->error > 0) {
-    buffer_text(w->b, " ± ");
-    write_spread(w, f->error, f->dimension, f->error);
-  }
+  write_quantity(w, f->value.value, f->dimension);
+  write_uncertainty(w, f->error, f->dimension);
   if (!isnan(f->value.when)) {
     buffer_text(w->b, " at ");
     write_clock(w->b, f->value.when);
@@ -162,13 +181,16 @@ static const char *watched_name(const heat_case *c, const target *t) {
   return "";
 }
 
-/* "time at temperature of coldest in layer core" */
+/* " (time at temperature, coldest in core)" */
 static void write_subject(writing *w, const figure *asked) {
+  buffer_text(w->b, " (");
   for (const char *c = asked->kind->name; *c; c++) buffer_add(w->b, *c == '_' ? " " : c, 1);
-  if (!asked->kind->takes_place) return;
-  buffer_format(w->b, " of %s", watched_name(w->c, &asked->of));
-  int layer = asked->of.is_figure ? -1 : asked->of.place.layer;
-  if (layer >= 0) buffer_format(w->b, " in %s", w->c->part.layers.items[layer].name);
+  if (asked->kind->takes_place) {
+    buffer_format(w->b, ", %s", watched_name(w->c, &asked->of));
+    int layer = asked->of.is_figure ? -1 : asked->of.place.layer;
+    if (layer >= 0) buffer_format(w->b, " in %s", w->c->part.layers.items[layer].name);
+  }
+  buffer_text(w->b, ")");
 }
 
 static void write_figure_lines(writing *w) {
@@ -178,12 +200,11 @@ static void write_figure_lines(writing *w) {
     const figure *asked = &w->c->figures.items[i];
     const figure_result *f = &w->r->figure[i];
     buffer_format(w->b, "  %-20s ", asked->name);
-    write_subject(w, asked);
-    buffer_text(w->b, ": ");
     if (f->value.found)
       write_figure_value(w, f);
     else
       buffer_format(w->b, "no value, %s", f->value.why ? f->value.why : "not reached");
+    write_subject(w, asked);
     if (f->required && asked->require) write_judgement(w, f, asked->require);
     buffer_text(w->b, "\n");
   }
