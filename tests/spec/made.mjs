@@ -2,7 +2,8 @@
 import { readdirSync, existsSync } from 'node:fs';
 import { join } from 'node:path';
 import { check, expect, same } from './tally.mjs';
-import { completed, examples, readJson, root, specificationPath, readJson as read } from './specification.mjs';
+import { madePage, pages, pageText } from './pages.mjs';
+import { completed, examples, readJson, root, specificationPath } from './specification.mjs';
 
 // Members against each other, so that a difference is told by its name.
 function sameMembers(got, wanted, words) {
@@ -10,7 +11,7 @@ function sameMembers(got, wanted, words) {
 }
 
 export async function checkMade(specification, program) {
-  const made = completed(read(specificationPath), program);
+  const made = completed(readJson(specificationPath), program);
   await check('the schemas of a case are those of the rows (node tests/spec/update.mjs)', () => {
     same(specification['x-schemas-from-rows'], made['x-schemas-from-rows'], 'names');
     sameMembers(specification.components.schemas, made.components.schemas, 'schema');
@@ -20,6 +21,12 @@ export async function checkMade(specification, program) {
     same(content(specification).requestBody.content, content(made).requestBody.content, 'requests');
     same(content(specification).responses['200'].content, content(made).responses['200'].content, 'answer');
   });
+  for (const page of pages)
+    await check(`${page} shows real runs`, () => {
+      const lines = madePage(page, program).split('\n');
+      pageText(page).split('\n').forEach((line, i) => same(line, lines[i], `line ${i + 1}`));
+      expect(pageText(page).includes('<!-- shows: '), 'it shows none');
+    });
 }
 
 // Documents that the reader takes must be valid by the schema too, or a generated client could not send them.
