@@ -18,9 +18,11 @@ enum {
   LARGE_RESULT = 256 << 10
 };
 
-static const char *const result_types[] = {"application/json", "text/csv", NULL};
-static const media result_media[] = {MEDIA_JSON, MEDIA_CSV};
-static const char *const tag_endings[] = {"json", "csv"};
+static const char *const result_types[] = {"application/json", "text/csv", "text/plain", NULL};
+static const char *const sent_types[] = {"application/json", "text/csv",
+                                         "text/plain; charset=utf-8"};
+static const media result_media[] = {MEDIA_JSON, MEDIA_CSV, MEDIA_TEXT};
+static const char *const tag_endings[] = {"json", "csv", "txt"};
 
 /* ---- results ---- */
 
@@ -33,7 +35,7 @@ static int accepted_type(const request *q) {
 }
 
 static void refuse_form(reply *r) {
-  reply_problem(r, 406, "a result is offered as application/json and as text/csv");
+  reply_problem(r, 406, "a result is offered as application/json, as text/csv and as text/plain");
 }
 
 typedef struct held_view {
@@ -95,7 +97,7 @@ static void reply_done(service *s, const request *q, reply *r, const job_view *j
   reply_header_set(r, "Cache-Control", "private, no-cache");
   if (unchanged(q, r, job, type)) return;
   r->status = 200;
-  r->type = result_types[type];
+  r->type = sent_types[type];
   if (result_media[type] == MEDIA_JSON) {
     if (!lend_text(s, r, job)) reply_problem(r, 503, "the result is no longer kept");
   } else if (job->kind->write(job->document, job->answer, result_media[type], &r->body) != 0) {
@@ -349,7 +351,8 @@ static double wait_wanted(const service *s, const request *q, reply *r) {
   return p.respond_async ? 0 : s->options.wait;
 }
 
-/* What is known of the job once the wait is over. */
+/* What is known of the job once the wait is over. Who wanted no wait is told of the job, even if a
+ * worker has been faster than this reply. */
 static void reply_outcome(service *s, request *q, reply *r) {
   job_view job;
   if (s->store->look(s->store, q->job, &job) != 0) {
@@ -357,7 +360,7 @@ static void reply_outcome(service *s, request *q, reply *r) {
     return;
   }
   reply_header_set(r, "Location", "/v1/jobs/%s", job.id);
-  if (is_over(&job)) {
+  if (is_over(&job) && q->waited) {
     reply_ended(s, q, r, &job);
   } else {
     reply_header_set(r, "Retry-After", "%d", retry_after_job(s, &job));

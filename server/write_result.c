@@ -63,7 +63,7 @@ static void write_source(writing *w, const material *m) {
   buffer source;
   buffer_init(&source, 0);
   buffer_text(&source, m->source ? m->source : "defined in the case");
-  if (m->revision && *m->revision) buffer_format(&source, " (%s)", m->revision);
+  if (m->revision && *m->revision) buffer_format(&source, " (revision %s)", m->revision);
   if (source.failed)
     w->b->failed = true;
   else

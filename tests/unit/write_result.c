@@ -291,7 +291,7 @@ Test(write_result, energy_names_the_faces_that_the_part_has) {
 Test(write_result, record_warnings_and_numerics) {
   json_t *r = rendered();
   cr_assert_eq(strlen(json_string_value(at(r, "record/case"))), strlen("sha256:") + 64);
-  text_is(r, "record/materials/steel_a", "a handbook (2)");
+  text_is(r, "record/materials/steel_a", "a handbook (revision 2)");
   text_is(r, "record/materials/mine", "defined in the case");
   cr_assert(json_is_null(at(r, "record/recipe")));
   text_is(r, "warnings/0/at", "/part/diameter");
