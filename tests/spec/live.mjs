@@ -76,6 +76,10 @@ async function checkJobs(solve, asked, service, first) {
     const answer = await solve(200, withHistory, { Accept: 'text/csv' });
     same(answer.body.split('\r\n')[0], 'time [s],core [degC]', 'heading');
   });
+  await check('stages, figures and verdict as text/plain', async () => {
+    const answer = await solve(200, first, { Accept: 'text/plain' });
+    expect(answer.body.includes('Verdict') && answer.body.includes(first.figures[0].name), answer.body.slice(0, 200));
+  });
   await check('409 when an ended job is cancelled', () => asked('/v1/jobs/{id}', 'delete', 409, `/v1/jobs/${id}`));
   await check('404 for an unknown job', async () => {
     await asked('/v1/jobs/{id}', 'get', 404, UNKNOWN_JOB);

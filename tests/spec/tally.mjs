@@ -17,10 +17,15 @@ export function expect(condition, words) {
   if (!condition) throw new Error(words);
 }
 
+// The two as JSON from shortly before they part.
 export function same(got, wanted, words) {
-  const a = JSON.stringify(got);
-  const b = JSON.stringify(wanted);
-  if (a !== b) throw new Error(`${words}: got ${a?.slice(0, 600)}, wanted ${b?.slice(0, 600)}`);
+  const a = JSON.stringify(got) ?? 'nothing';
+  const b = JSON.stringify(wanted) ?? 'nothing';
+  if (a === b) return;
+  let at = 0;
+  while (a[at] === b[at]) at += 1;
+  const near = (text) => text.slice(Math.max(0, at - 60), at + 240);
+  throw new Error(`${words}:\ngot    ${near(a)}\nwanted ${near(b)}`);
 }
 
 export function tally() {
