@@ -13,19 +13,16 @@ static int plan(const document *d) {
   return 1;
 }
 
-/* The solver knows a stage by its index; its caller knows it by its name. */
-static void name_the_stage(const heat_case *c, fault *f) {
-  if (!f || f->stage < 0 || f->stage >= c->stages.count) return;
-  char where[160];
-  int length = snprintf(where, sizeof where, " (in stage %.64s", c->stages.items[f->stage].name);
-  if (isfinite(f->time))
-    length +=
-        snprintf(where + length, sizeof where - (size_t)length, ", %.6g s from the start", f->time);
-  snprintf(where + length, sizeof where - (size_t)length, ")");
-  size_t used = strlen(f->is), room = sizeof f->is - 1 - strlen(where);
-  if (used > room) used = room;
-  memcpy(f->is + used, where, strlen(where) + 1);
-  if (!f->at[0]) snprintf(f->at, sizeof f->at, "/stages/%d", f->stage);
+/* The solver's reason names the stage; here it is told where that stands in the document, and when
+ * in words. */
+static void tell_where(fault *f) {
+  char when[64];
+  if (!f) return;
+  if (f->stage >= 0 && !f->at[0]) snprintf(f->at, sizeof f->at, "/stages/%d", f->stage);
+  if (!isfinite(f->time)) return;
+  snprintf(when, sizeof when, ", %.6g s from the start of the case", f->time);
+  size_t used = strlen(f->is), room = sizeof f->is - 1 - strlen(when);
+  memcpy(f->is + (used < room ? used : room), when, strlen(when) + 1);
 }
 
 static status run(const document *d, int task, const solve_control *control, void **part,
@@ -33,7 +30,7 @@ static status run(const document *d, int task, const solve_control *control, voi
   (void)task;
   heat_result *result = NULL;
   status s = solve_case(d->question, control, &result, f);
-  if (s != STATUS_OK) name_the_stage(d->question, f);
+  if (s != STATUS_OK) tell_where(f);
   *part = result;
   return s;
 }
