@@ -123,7 +123,7 @@ static void targets(void) {
 
 static void results(void) {
   char location[TEXT], result[TEXT + 16], tag[TEXT], header[2 * TEXT], csv_tag[TEXT];
-  answer a = post(port, "/v1/trials", NULL, "{\"tasks\": 7, \"bytes\": 5000}");
+  answer a = post(port, "/v1/trials", NULL, "{\"inputs\": {\"tasks\": 7, \"bytes\": 5000}}");
   check(a.status == 200 && answer_number(&a, "sum") == 28, "seven tasks are folded into one sum");
   check(answer_header(&a, "Location", location, sizeof location) &&
             strncmp(location, "/v1/jobs/", 9) == 0 && strlen(location) == 9 + 32,
@@ -179,7 +179,7 @@ static bool inflate_all(const answer *a, buffer *out) {
 
 static void compression(void) {
   char location[TEXT], result[TEXT + 16], tag[TEXT], packed_tag[TEXT], header[TEXT + 32];
-  answer plain = post(port, "/v1/trials", NULL, "{\"bytes\": 300000}");
+  answer plain = post(port, "/v1/trials", NULL, "{\"inputs\": {\"bytes\": 300000}}");
   answer_header(&plain, "Location", location, sizeof location);
   answer_header(&plain, "ETag", tag, sizeof tag);
   snprintf(result, sizeof result, "%s/result", location);
@@ -221,7 +221,8 @@ static bool becomes(const char *location, const char *state) {
 
 static void waiting(void) {
   char location[TEXT], result[TEXT + 16], value[TEXT];
-  answer a = post(port, "/v1/trials", "Prefer: respond-async\r\n", "{\"seconds\": 0.4}");
+  answer a =
+      post(port, "/v1/trials", "Prefer: respond-async\r\n", "{\"inputs\": {\"seconds\": 0.4}}");
   check(a.status == 202 && has(&a, "Preference-Applied", "respond-async"),
         "respond-async: 202, and told so");
   check(answer_header(&a, "Location", location, sizeof location) && has(&a, "Retry-After", NULL),
@@ -242,7 +243,7 @@ static void waiting(void) {
   answer_free(&a);
 
   double began = clock_steady();
-  a = post(port, "/v1/trials", "Prefer: wait=1\r\n", "{\"seconds\": 3}");
+  a = post(port, "/v1/trials", "Prefer: wait=1\r\n", "{\"inputs\": {\"seconds\": 3}}");
   double took = clock_steady() - began;
   check(a.status == 202 && took > 0.95 && took < 1.4, "wait=1 on a job of 3 s: 202 after %.2f s",
         took);
@@ -251,18 +252,21 @@ static void waiting(void) {
   answer_header(&a, "Location", location, sizeof location);
   answer_free(&a);
   expect(ask(port, "DELETE", location, NULL, NULL), 200, "it is cancelled");
-  a = post(port, "/v1/trials", "Prefer: handling=strict, wait=100\r\n", "{\"seconds\": 0.1}");
+  a = post(port, "/v1/trials", "Prefer: handling=strict, wait=100\r\n",
+           "{\"inputs\": {\"seconds\": 0.1}}");
   check(a.status == 200 && has(&a, "Preference-Applied", "wait=30"), "wait=100 is cut to 30");
   answer_free(&a);
   began = clock_steady();
-  expect(post(port, "/v1/trials", NULL, "{\"seconds\": 0.3}"), 200, "a plain request waits");
+  expect(post(port, "/v1/trials", NULL, "{\"inputs\": {\"seconds\": 0.3}}"), 200,
+         "a plain request waits");
   took = clock_steady() - began;
   check(took > 0.29 && took < 0.6, "and no longer than its job (%.3f s)", took);
 }
 
 static void cancelling(void) {
   char location[TEXT], result[TEXT + 16];
-  answer a = post(port, "/v1/trials", "Prefer: respond-async\r\n", "{\"seconds\": 30}");
+  answer a =
+      post(port, "/v1/trials", "Prefer: respond-async\r\n", "{\"inputs\": {\"seconds\": 30}}");
   answer_header(&a, "Location", location, sizeof location);
   answer_free(&a);
   snprintf(result, sizeof result, "%s/result", location);
@@ -290,11 +294,11 @@ static void failures(void) {
     const char *json;
     int status;
     const char *what;
-  } cases[] = {
-      {"{\"fails\": 2}", 422, "a job beyond a limit"},
-      {"{\"fails\": 6}", 422, "a job that does not converge"},
-      {"{\"fails\": 10}", 422, "an answer that cannot be written"},
-      {"{\"seconds\": 9, \"job\": {\"time_limit\": 0.2}}", 504, "a job over its own time limit"}};
+  } cases[] = {{"{\"inputs\": {\"fails\": 2}}", 422, "a job beyond a limit"},
+               {"{\"inputs\": {\"fails\": 6}}", 422, "a job that does not converge"},
+               {"{\"inputs\": {\"fails\": 10}}", 422, "an answer that cannot be written"},
+               {"{\"inputs\": {\"seconds\": 9}, \"job\": {\"time_limit\": 0.2}}", 504,
+                "a job over its own time limit"}};
   for (size_t i = 0; i < sizeof cases / sizeof cases[0]; i++) {
     answer a = post(port, "/v1/trials", NULL, cases[i].json);
     check(a.status == cases[i].status && has(&a, "Content-Type", "application/problem+json"),

@@ -46,7 +46,7 @@ static void full_queue(void) {
   char location[TEXT];
   service *s = trial_open(flags);
   port = service_port(s);
-  submit("{\"seconds\": 20}", location);
+  submit("{\"inputs\": {\"seconds\": 20}}", location);
   check(reaches("workers_busy", 1), "one worker is busy");
   for (int i = 0; i < 4; i++) submit("{}", location);
   check(gauge("queue_depth") == 4, "four jobs wait");
@@ -77,11 +77,11 @@ static void order(void) {
   char first[TEXT], low[TEXT], high[TEXT], usual[TEXT];
   service *s = trial_open(flags);
   port = service_port(s);
-  submit("{\"seconds\": 0.3}", first);
+  submit("{\"inputs\": {\"seconds\": 0.3}}", first);
   check(reaches("workers_busy", 1), "one worker is busy");
-  submit("{\"seconds\": 0.1, \"job\": {\"priority\": -1}}", low);
-  submit("{\"seconds\": 0.1}", usual);
-  submit("{\"seconds\": 0.1, \"job\": {\"priority\": 5}}", high);
+  submit("{\"inputs\": {\"seconds\": 0.1}, \"job\": {\"priority\": -1}}", low);
+  submit("{\"inputs\": {\"seconds\": 0.1}}", usual);
+  submit("{\"inputs\": {\"seconds\": 0.1}, \"job\": {\"priority\": 5}}", high);
   answer a = ask(port, "GET", usual, NULL, NULL);
   check(answer_text_is(&a, "state", "queued") && answer_number(&a, "queue_position") == 1,
         "the usual job stands behind the urgent one");
@@ -123,7 +123,7 @@ static void begin_call(caller *c, const char *headers, const char *json) {
 
 static void same_bytes(void) {
   static const char *const flags[] = {"--workers", "4", "--connections", "256", NULL};
-  const char *json = "{\"seconds\": 0.02, \"tasks\": 3, \"bytes\": 20000}";
+  const char *json = "{\"inputs\": {\"seconds\": 0.02, \"tasks\": 3, \"bytes\": 20000}}";
   caller callers[CALLERS];
   service *s = trial_open(flags);
   port = service_port(s);
@@ -150,10 +150,11 @@ static void waiters(void) {
   caller callers[30];
   service *s = trial_open(flags);
   port = service_port(s);
-  for (int i = 0; i < 20; i++) begin_call(&callers[i], "Prefer: wait=3\r\n", "{\"seconds\": 60}");
+  for (int i = 0; i < 20; i++)
+    begin_call(&callers[i], "Prefer: wait=3\r\n", "{\"inputs\": {\"seconds\": 60}}");
   check(reaches("http_waiters", 20), "twenty of forty connections wait");
   double began = clock_steady();
-  answer a = post(port, "/v1/trials", "Prefer: wait=3\r\n", "{\"seconds\": 60}");
+  answer a = post(port, "/v1/trials", "Prefer: wait=3\r\n", "{\"inputs\": {\"seconds\": 60}}");
   check(a.status == 202 && clock_steady() - began < 0.2, "the next is told 202 at once (%.3f s)",
         clock_steady() - began);
   answer_free(&a);
@@ -179,7 +180,7 @@ static void departure(void) {
   port = service_port(s);
   wire_open(&w, port, 5);
   wire_text(&w, "POST /v1/trials HTTP/1.1\r\nHost: t\r\nContent-Type: application/json\r\n"
-                "Content-Length: 15\r\n\r\n{\"seconds\": 60}");
+                "Content-Length: 27\r\n\r\n{\"inputs\": {\"seconds\": 60}}");
   check(reaches("workers_busy", 1), "somebody waits for a long job");
   double left = clock_steady();
   wire_close(&w);
@@ -188,7 +189,7 @@ static void departure(void) {
         atomic_load(&trial_stopped) - left);
   wire_open(&w, port, 5);
   wire_text(&w, "POST /v1/trials HTTP/1.1\r\nHost: t\r\nContent-Type: application/json\r\n"
-                "Content-Length: 15\r\n\r\n{\"seconds\": 60}");
+                "Content-Length: 27\r\n\r\n{\"inputs\": {\"seconds\": 60}}");
   check(reaches("workers_busy", 1), "somebody waits again");
   struct linger abrupt = {1, 0};
   setsockopt(w.socket, SOL_SOCKET, SO_LINGER, &abrupt, sizeof abrupt);
@@ -214,10 +215,10 @@ static void stopping(void) {
   wire_text(&open, "GET /readyz HTTP/1.1\r\nHost: t\r\n\r\n");
   check(wire_read(&open, &a, false) && a.status == 200, "ready before");
   answer_free(&a);
-  begin_call(&short_one, NULL, "{\"seconds\": 0.6}");
-  begin_call(&long_one, NULL, "{\"seconds\": 60}");
+  begin_call(&short_one, NULL, "{\"inputs\": {\"seconds\": 0.6}}");
+  begin_call(&long_one, NULL, "{\"inputs\": {\"seconds\": 60}}");
   check(reaches("workers_busy", 2), "a short and a long job run");
-  begin_call(&queued, NULL, "{\"seconds\": 60}");
+  begin_call(&queued, NULL, "{\"inputs\": {\"seconds\": 60}}");
   check(reaches("queue_depth", 1), "a third waits");
   double began = clock_steady();
   pthread_create(&thread, NULL, stop, s);

@@ -110,7 +110,7 @@ static void slow_reader(void) {
   wire w;
   int connections = 1;
   wire_open(&w, port, 1);
-  wire_text(&w, HEADERS "Content-Length: 19\r\n\r\n{\"bytes\": 30000000}");
+  wire_text(&w, HEADERS "Content-Length: 31\r\n\r\n{\"inputs\": {\"bytes\": 30000000}}");
   double began = clock_steady();
   answer a;
   sleep(1);
@@ -237,10 +237,10 @@ static void large_documents(void) {
   port = service_port(s);
   buffer large;
   buffer_init(&large, 0);
-  buffer_text(&large, "{\"bytes\": 600000, \"note\": \"");
-  while (large.length < HUGE_BODY - 18) buffer_text(&large, "aaaaaaaaaaaaaaaa");
-  while (large.length < HUGE_BODY - 2) buffer_text(&large, "b");
-  buffer_text(&large, "\"}");
+  buffer_text(&large, "{\"inputs\": {\"bytes\": 600000, \"note\": \"");
+  while (large.length < HUGE_BODY - 19) buffer_text(&large, "aaaaaaaaaaaaaaaa");
+  while (large.length < HUGE_BODY - 3) buffer_text(&large, "b");
+  buffer_text(&large, "\"}}");
   for (int i = 0; i < 4; i++) {
     wire_open(&senders[i], port, 30);
     wire_text(&senders[i], HEADERS "Content-Length: 8388608\r\n\r\n");

@@ -52,12 +52,13 @@ typedef struct sum {
 
 static int read_question(struct reader *r, void *json, document *d) {
   (void)r;
+  const json_t *wanted = json_object_get(json, "inputs");
   question *q = calloc(1, sizeof *q);
   if (!q) return -1;
-  q->seconds = json_number_value(json_object_get(json, "seconds"));
-  q->bytes = (int)json_integer_value(json_object_get(json, "bytes"));
-  q->fails = (int)json_integer_value(json_object_get(json, "fails"));
-  const json_t *tasks = json_object_get(json, "tasks");
+  q->seconds = json_number_value(json_object_get(wanted, "seconds"));
+  q->bytes = (int)json_integer_value(json_object_get(wanted, "bytes"));
+  q->fails = (int)json_integer_value(json_object_get(wanted, "fails"));
+  const json_t *tasks = json_object_get(wanted, "tasks");
   q->tasks = tasks ? (int)json_integer_value(tasks) : 1;
   d->question = q;
   char *finished = json_dumps(json, JSON_COMPACT | JSON_SORT_KEYS);

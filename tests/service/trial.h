@@ -18,9 +18,9 @@ int tally(void);
    (NULL-terminated, as on the command line). Ends the program if it cannot start. */
 service *trial_open(const char *const *flags);
 
-/* Kinds that heat nothing. "trial": {"seconds": S, "tasks": N, "bytes": B, "fails": STATUS}: each
-   of N tasks takes S seconds, stepping every millisecond; the answer is the sum of the tasks'
-   numbers and a text of B bytes. "plain": the same, not offered as CSV. */
+/* Kinds that heat nothing. "trial": {"inputs": {"seconds": S, "tasks": N, "bytes": B, "fails":
+ * STATUS}}: each of N tasks takes S seconds, stepping every millisecond; the answer is the sum of
+ * the tasks' numbers and a text of B bytes. "plain": the same, not offered as CSV. */
 extern const job_kind *const trial_kinds[];
 
 /* Tasks that are running now, and the steady time at which the last one was told to stop. */
