@@ -123,7 +123,7 @@ static void write_value(schema_writer *w, const parameter *p) {
   case VALUE_OPTIONAL: schema_refer_type(w, p->of); break;
   case VALUE_LIST: schema_list_of(w, p->of); break;
   case VALUE_INSTANTS: write_list_of_form(w, FORM_INSTANT, LIMIT_OUTPUTS); break;
-  case VALUE_PLACES: write_list_of_form(w, FORM_PLACE, LIMIT_COLUMNS); break;
+  case VALUE_PLACES: write_list_of_form(w, FORM_COLUMN, LIMIT_COLUMNS); break;
   case VALUE_UNTIL: /* a stage has one condition, a group a list of them */
     if (p->of)
       schema_refer_type(w, p->of);

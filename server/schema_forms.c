@@ -159,11 +159,19 @@ static void write_material_name(schema_writer *w, dimension d) {
 
 static void write_place(schema_writer *w, dimension d) {
   (void)d;
-  describe(w,
-           "A point's or a face's name, coldest, hottest, mean, section_difference, center or "
-           "mid_wall; for time_to and conditions an accumulating figure's name; in a history also "
-           "heat_flow:FACE, a named series or LOG/COLUMN");
+  describe(w, "A point's or a face's name, coldest, hottest, mean, section_difference, center or "
+              "mid_wall; for time_to and conditions also an accumulating figure's name");
   buffer_format(w->b, "\"type\": \"string\", \"minLength\": 1, \"maxLength\": %d", LIMIT_TEXT);
+}
+
+static void write_column(schema_writer *w, dimension d) {
+  (void)d;
+  describe(w,
+           "A place, \"heat_flow:FACE\", a named series, \"LOG/COLUMN\", or a place in one layer");
+  buffer_text(w->b, "\"type\": [\"string\", \"object\"], \"properties\": {\"of\": {");
+  schema_refer_form(w, FORM_PLACE, d);
+  buffer_text(w->b,
+              "}, \"in\": " NAME "}, \"required\": [\"of\"], \"additionalProperties\": false");
 }
 
 static void write_location(schema_writer *w, dimension d) {
@@ -244,6 +252,7 @@ static const form_row form_rows[FORMS] = {
     [FORM_TABLE] = {"table", false, write_table},
     [FORM_MATERIAL_NAME] = {"material_name", false, write_material_name},
     [FORM_PLACE] = {"place", false, write_place},
+    [FORM_COLUMN] = {"column", false, write_column},
     [FORM_LOCATION] = {"location", false, write_location},
     [FORM_INSTANT] = {"instant", false, write_instant},
     [FORM_STAGE_SET] = {"stage_set", false, write_stage_set},

@@ -86,13 +86,15 @@ static void around_case(schema_writer *w) {
       w->b, ", \"kind\": {\"type\": \"string\", \"enum\": [\"solve\"], \"description\": \"Kind of "
             "question; solve unless given\"}, \"job\": {\"type\": \"object\", \"description\": "
             "\"How to treat the job; not part of the case's hash\", \"properties\": {\"priority\": "
-            "{\"type\": \"integer\", \"description\": \"The higher number first\"}, ");
+            "{\"type\": \"integer\", \"minimum\": -1000, \"maximum\": 1000, \"default\": 0, "
+            "\"description\": \"The higher number first\"}, ");
   buffer_format(w->b, "\"not_before\": {%s}, \"expires_at\": {%s}, \"time_limit\": {", time, time);
   schema_refer_form(w, FORM_QUANTITY, DIMENSION_TIME);
-  buffer_format(w->b,
-                "}, \"id\": {\"type\": \"string\", \"maxLength\": %d}}, "
-                "\"additionalProperties\": false}",
-                LIMIT_TEXT);
+  buffer_text(
+      w->b, ", \"exclusiveMinimum\": 0, \"description\": \"Longest time of solving\"}, \"id\": {");
+  schema_refer_form(w, FORM_NAME, DIMENSION_NUMBER);
+  buffer_text(w->b, ", \"description\": \"The caller's own name of the job\"}}, "
+                    "\"additionalProperties\": false}");
 }
 
 static void write_enthalpy(schema_writer *w) {
