@@ -217,7 +217,7 @@ enum { MOST_CHOICES = 64 };
 static void write_part(schema_writer *w) {
   const char *names[MOST_CHOICES];
   int count = 0;
-  for (; shapes[count] && count < MOST_CHOICES - 1; count++) names[count] = shapes[count]->name;
+  for (; count < MOST_CHOICES - 1 && shapes[count]; count++) names[count] = shapes[count]->name;
   names[count] = NULL;
   open_union(w, &part_type, "shape", names);
   for (int i = 0; i < count; i++)
@@ -227,7 +227,7 @@ static void write_part(schema_writer *w) {
 static void write_figure(schema_writer *w) {
   const char *names[MOST_CHOICES];
   int count = 0;
-  for (; figure_kinds[count] && count < MOST_CHOICES - 1; count++)
+  for (; count < MOST_CHOICES - 1 && figure_kinds[count]; count++)
     names[count] = figure_kinds[count]->name;
   names[count] = NULL;
   open_union(w, &figure_type, "kind", names);
