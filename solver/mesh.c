@@ -13,6 +13,7 @@
 
 enum { FEWEST_CELLS = 4 }; /* of a layer: its coarse twin still has an inner node */
 
+#define LEAST_SHARE      0.125 /* of the cells in any layer: a finer plan is finer everywhere */
 #define SMALLEST_GRADING 1e-5
 
 /* ---- cells of one layer ---- */
@@ -78,9 +79,9 @@ static double layer_weight(const heat_case *c, const property *properties, int l
   return l->thickness / sqrt(p->largest_conductivity / p->reference_capacity);
 }
 
-static int even_at_least(double cells) {
+static int even_at_least(double cells, int least) {
   int n = 2 * (int)(cells / 2 + 0.5);
-  return n < FEWEST_CELLS ? FEWEST_CELLS : n;
+  return n < least ? least : n;
 }
 
 static int computed_layers(const heat_case *c, bool halved) {
@@ -97,9 +98,10 @@ static void share_cells(int *cells, const heat_case *c, const mesh_plan *plan,
                         const property *properties) {
   int layers = computed_layers(c, plan->halved);
   double sum = 0;
+  int fewest = even_at_least(plan->cells * LEAST_SHARE, FEWEST_CELLS);
   for (int i = 0; i < layers; i++) sum += layer_weight(c, properties, i);
   for (int i = 0; i < layers; i++)
-    cells[i] = even_at_least(plan->cells * layer_weight(c, properties, i) / sum);
+    cells[i] = even_at_least(plan->cells * layer_weight(c, properties, i) / sum, fewest);
 }
 
 /* ---- building ---- */

@@ -320,7 +320,7 @@ static void close_interval(observer *o, double t) {
 static void jumped(void *self, double t) {
   observer *o = self;
   if (!o->reference) {
-    close_interval(o, t);
+    if (t > 0) close_interval(o, t); /* that of an earlier stage is closed already */
     if (o->record.intervals < LIMIT_STAGES + LIMIT_TABLE_ROWS) o->record.intervals++;
   }
   o->jump_at = t;
