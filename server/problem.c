@@ -18,7 +18,7 @@ static const problem_row by_http_status[] = {
     {405, "method-not-allowed", "This address does not take that method"},
     {406, "not-acceptable", "The answer is not offered in that form"},
     {408, "too-slow", "The request came too slowly"},
-    {409, "not-done", "The job has not ended"},
+    {409, "job-state", "The state of the job does not allow this"},
     {410, "cancelled", "The job was cancelled"},
     {411, "length-required", "The request must state its length"},
     {413, "too-large", "The request is larger than the limit"},
