@@ -69,7 +69,9 @@ status attempt_run(attempt *t, double tolerance, const double *durations,
                      .control = control,
                      .progress_from = progress_from,
                      .progress_to = progress_to};
-  return march(&r, &t->stepper, &t->outcome, f);
+  status bad = march(&r, &t->stepper, &t->outcome, f);
+  observe_ranges(&t->observer);
+  return bad;
 }
 
 void attempt_free(attempt *t) {

@@ -280,18 +280,28 @@ static void field_step(observer *o, double t1, bool ends) {
 
 /* ---- ranges ---- */
 
+/* T rises with H: the extremes of H are kept, and turned into temperatures when all is done. */
 static void note_ranges(observer *o, const double *state) {
   const mesh *m = o->mesh;
-  double *temperature = o->watch.scratch;
-  conduction_temperatures(m, state, temperature);
   for (int i = 0; i < m->layers; i++) {
     const mesh_layer *l = &m->layer[i];
+    double least = o->least_state[i], most = o->most_state[i];
     for (int node = l->first; node <= l->last; node++) {
-      o->least[i] = fmin(o->least[i], temperature[node]);
-      o->most[i] = fmax(o->most[i], temperature[node]);
-      if (state[node] < l->property->least || state[node] > l->property->most)
-        o->beyond_table = true;
+      least = state[node] < least ? state[node] : least;
+      most = state[node] > most ? state[node] : most;
     }
+    o->least_state[i] = least;
+    o->most_state[i] = most;
+  }
+}
+
+void observe_ranges(observer *o) {
+  double slope;
+  for (int i = 0; i < o->mesh->layers; i++) {
+    const property *p = o->mesh->layer[i].property;
+    o->least[i] = property_temperature(p, o->least_state[i], &slope);
+    o->most[i] = property_temperature(p, o->most_state[i], &slope);
+    if (o->least_state[i] < p->least || o->most_state[i] > p->most) o->beyond_table = true;
   }
 }
 
@@ -392,8 +402,8 @@ status observe_init(observer *o, const heat_case *c, const mesh *m, const observ
   o->mesh = m;
   o->reference = reference;
   for (int i = 0; i < LIMIT_LAYERS; i++) {
-    o->least[i] = INFINITY;
-    o->most[i] = -INFINITY;
+    o->least[i] = o->least_state[i] = INFINITY;
+    o->most[i] = o->most_state[i] = -INFINITY;
   }
   for (int i = 0; i < LIMIT_STAGES; i++) o->stage_end[i] = NAN;
   status bad = watch_init(&o->watch, c, m, memory, f);

@@ -66,9 +66,10 @@ typedef struct observer {
   double
       end_difference[LIMIT_STAGES]; /* of the deciding leaf's value at the time of the reference */
 
-  double least[LIMIT_LAYERS],
-      most[LIMIT_LAYERS]; /* K, of each layer of the mesh, at ends of steps */
-  bool beyond_table;      /* a state left the range of the property tables */
+  double least_state[LIMIT_LAYERS],
+      most_state[LIMIT_LAYERS];                   /* H, by layer of the mesh, at ends of steps */
+  double least[LIMIT_LAYERS], most[LIMIT_LAYERS]; /* K, of the same: set by observe_ranges */
+  bool beyond_table; /* a state left the range of the property tables */
   bool started_true[LIMIT_STAGES];
   bool out_of_memory;
 } observer;
@@ -81,6 +82,9 @@ MUST_USE status observe_init(observer *o, const heat_case *c, const mesh *m,
 /* Largest difference (K) between two finished runs: record, history columns that are places,
    fields. `fine` has a node between any two of `coarse`. */
 double observe_difference(const observer *fine, const observer *coarse);
+
+/* The run is over: fills least, most and beyond_table. */
+void observe_ranges(observer *o);
 
 /* Longest the case can take, s. */
 double case_longest(const heat_case *c);
