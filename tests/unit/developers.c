@@ -144,6 +144,19 @@ Test(developers, readme_holds_the_table_of_flags) {
   free(readme);
 }
 
+Test(developers, readme_names_every_shape_and_every_figure_kind) {
+  char *readme = text_of("README.md"), quoted[80];
+  for (int i = 0; shapes[i]; i++) {
+    snprintf(quoted, sizeof quoted, "`%s`", shapes[i]->name);
+    cr_expect(strstr(readme, quoted), "README.md lacks %s", quoted);
+  }
+  for (int i = 0; figure_kinds[i]; i++) {
+    snprintf(quoted, sizeof quoted, "`%s`", figure_kinds[i]->name);
+    cr_expect(strstr(readme, quoted), "README.md lacks %s", quoted);
+  }
+  free(readme);
+}
+
 /* The limits that README.md tells are those of the program. */
 Test(developers, readme_tells_the_limits) {
   static const struct {
