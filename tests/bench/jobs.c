@@ -74,8 +74,16 @@ document *bench_read(const char *text, size_t length) {
   return d;
 }
 
-double bench_now(void) {
+static double seconds_on(clockid_t clock) {
   struct timespec t;
-  clock_gettime(CLOCK_MONOTONIC, &t);
+  clock_gettime(clock, &t);
   return (double)t.tv_sec + 1e-9 * (double)t.tv_nsec;
+}
+
+double bench_now(void) {
+  return seconds_on(CLOCK_MONOTONIC);
+}
+
+double bench_cpu(void) {
+  return seconds_on(CLOCK_THREAD_CPUTIME_ID);
 }

@@ -20,7 +20,9 @@ extern const bench_job bench_jobs[];
  * document_free. */
 document *bench_read(const char *text, size_t length);
 
-/* Monotonic time, s. */
+/* Monotonic time, s; and processor time of the calling thread, s, which other programs on the
+ * machine do not lengthen. */
 double bench_now(void);
+double bench_cpu(void);
 
 #endif
