@@ -19,6 +19,7 @@ export async function checkLive(service, judgement, specification) {
 
   await checkRefusals(solve, faultsOf, first);
   await checkJobs(solve, asked, service, first);
+  await checkEndings(solve, asked);
   await checkMaterials(asked);
   await checkOperation(asked, specification);
   await checkAddresses(service, judgement);
@@ -86,6 +87,29 @@ async function checkJobs(solve, asked, service, first) {
     await asked('/v1/jobs/{id}', 'delete', 404, UNKNOWN_JOB);
     await asked('/v1/jobs/{id}/result', 'get', 404, `${UNKNOWN_JOB}/result`);
   });
+}
+
+// A front of solidification at a very small error takes many seconds: long enough to be stopped.
+async function checkEndings(solve, asked) {
+  const long = { ...examples().find((e) => e.name === 'casting_in_mould').document, numerical_error: '0.002 K' };
+  await check('a running job is cancelled: 410 for its result', async () => {
+    const answer = await solve(202, long, { Prefer: 'respond-async' });
+    const path = answer.headers.location;
+    await asked('/v1/jobs/{id}/result', 'get', 409, `${path}/result`);
+    const job = JSON.parse((await asked('/v1/jobs/{id}', 'delete', 200, path)).body);
+    same(job.state, 'cancelled', 'state');
+    await asked('/v1/jobs/{id}/result', 'get', 410, `${path}/result`);
+  });
+  await check('a job beyond its time: 504, and failed', async () => {
+    const answer = await solve(504, { ...long, job: { time_limit: '0.1 s' } }, { Prefer: 'wait=30' });
+    const job = JSON.parse((await asked('/v1/jobs/{id}', 'get', 200, answer.headers.location)).body);
+    same([job.state, job.failure.status], ['failed', 504], 'job');
+  });
+  await check('jobs are listed by state', async () => {
+    const list = JSON.parse((await asked('/v1/jobs', 'get', 200, '/v1/jobs?state=failed')).body).jobs;
+    expect(list.length > 0 && list.every((job) => job.state === 'failed'), JSON.stringify(list).slice(0, 300));
+  });
+  await check('400 for a state that is none', () => asked('/v1/jobs', 'get', 400, '/v1/jobs?state=lost'));
 }
 
 async function checkMaterials(asked) {
