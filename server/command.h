@@ -34,6 +34,9 @@ int command_line(int count, const char **arguments);
 int input_read(const char *path, size_t limit, char **bytes, size_t *length, int *http_status,
                char *message, size_t message_size);
 
+/* How messages name the input: "standard input" for "-". */
+const char *input_name(const char *path);
+
 /* Reads a job document from the operand with the built-in library. Returns 0, or an exit code after
    every fault was told (see tell_faults). */
 int input_document(const options *o, bool problem_on_stdout, library **materials, document **d);

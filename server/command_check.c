@@ -46,7 +46,7 @@ static void write_check(buffer *b, const document *d, const solve_cost *cost) {
 static int tell_refusal(const char *path, const fault *f) {
   buffer b;
   buffer_init(&b, 0);
-  fprintf(stderr, "%s: %s: %s\n", path, f->at[0] ? f->at : "the document", f->is);
+  fprintf(stderr, "%s: %s: %s\n", input_name(path), f->at[0] ? f->at : "the document", f->is);
   problem_of_fault(&b, f);
   if (!b.failed) fputs(b.bytes, stdout);
   buffer_free(&b);

@@ -46,7 +46,7 @@ out:
   return *http_status == 200 ? 0 : -1;
 }
 
-static const char *shown_name(const char *path) {
+const char *input_name(const char *path) {
   return strcmp(path, "-") == 0 ? "standard input" : path;
 }
 
@@ -54,10 +54,10 @@ void tell_faults(const char *path, const fault_list *faults, const char *detail,
                  bool problem_on_stdout) {
   buffer b;
   buffer_init(&b, 0);
-  if (detail) fprintf(stderr, "%s %s\n", shown_name(path), detail);
+  if (detail) fprintf(stderr, "%s %s\n", input_name(path), detail);
   for (int i = 0; faults && i < faults->count; i++) {
     const request_fault *f = &faults->items[i];
-    fprintf(stderr, "%s: %s: %s", shown_name(path), f->at && f->at[0] ? f->at : "the document",
+    fprintf(stderr, "%s: %s: %s", input_name(path), f->at && f->at[0] ? f->at : "the document",
             f->is ? f->is : "is not valid");
     if (f->got) fprintf(stderr, " (got %s)", f->got);
     fputs("\n", stderr);

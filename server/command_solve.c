@@ -27,7 +27,7 @@ static double allowed_time(const options *o, const document *d) {
 static int tell_failure(const char *path, const fault *f) {
   buffer b;
   buffer_init(&b, 0);
-  fprintf(stderr, "%s: %s: %s\n", path, f->at[0] ? f->at : "the job",
+  fprintf(stderr, "%s: %s: %s\n", input_name(path), f->at[0] ? f->at : "the job",
           f->is[0] ? f->is : status_message(f->status));
   problem_of_fault(&b, f);
   if (!b.failed) fputs(b.bytes, stderr);
