@@ -38,8 +38,7 @@ struct http {
   http_watch *watch;
   http_desk *desk;
   buffer too_slow;
-  int port;
-  bool quiet;
+  int port, listening;   /* the descriptor, -1 once it is closed */
   pthread_mutex_t mutex; /* of `exchanges` */
   int exchanges;         /* requests begun and not completed */
 };
@@ -388,23 +387,10 @@ static bool open_watch(http *h) {
   return h->watch != NULL;
 }
 
-/* More than one thread only where it is asked for: the library warns of a pool of one. */
-static struct MHD_Daemon *start(http *h, int listening) {
-  struct MHD_OptionItem pool[] = {{MHD_OPTION_THREAD_POOL_SIZE, h->settings.threads, NULL},
-                                  {MHD_OPTION_END, 0, NULL}};
-  if (h->settings.threads < 2) pool[0].option = MHD_OPTION_END;
-  return MHD_start_daemon(
-      MHD_USE_EPOLL_INTERNAL_THREAD | MHD_ALLOW_SUSPEND_RESUME, 0, NULL, NULL, on_request, h,
-      MHD_OPTION_LISTEN_SOCKET, (MHD_socket)listening, MHD_OPTION_CONNECTION_LIMIT,
-      (unsigned)h->settings.connections, MHD_OPTION_CONNECTION_MEMORY_LIMIT, (size_t)MEMORY_LIMIT,
-      MHD_OPTION_CONNECTION_TIMEOUT, 0u, MHD_OPTION_STRICT_FOR_CLIENT, 1,
-      MHD_OPTION_URI_LOG_CALLBACK, on_target, h, MHD_OPTION_NOTIFY_COMPLETED, on_completed, h,
-      MHD_OPTION_NOTIFY_CONNECTION, on_connection, h, MHD_OPTION_ARRAY, pool, MHD_OPTION_END);
-}
-
 static void free_http(http *h) {
   desk_close(h->desk);
   watch_close(h->watch);
+  if (h->listening >= 0) close(h->listening);
   buffer_free(&h->too_slow);
   pthread_mutex_destroy(&h->mutex);
   free(h);
@@ -412,24 +398,35 @@ static void free_http(http *h) {
 
 http *http_open(const http_settings *settings, const http_app *app, char *message, size_t size) {
   http *h = calloc(1, sizeof *h);
-  int listening = -1;
   snprintf(message, size, "out of memory");
   if (!h) return NULL;
   h->settings = *settings;
   h->app = *app;
+  h->listening = -1;
   pthread_mutex_init(&h->mutex, NULL);
   buffer_init(&h->too_slow, 0);
   h->desk = desk_open(answer_at_desk);
   if (!h->desk || !open_watch(h)) goto out;
-  listening = http_listen(settings->listen, &h->port, message, size);
-  if (listening < 0) goto out;
-  h->daemon = start(h, listening);
-  if (h->daemon) return h;
-  snprintf(message, size, "the HTTP service could not be started");
-  close(listening);
+  h->listening = http_listen(settings->listen, &h->port, message, size);
+  if (h->listening >= 0) return h;
 out:
   free_http(h);
   return NULL;
+}
+
+/* More than one thread only where it is asked for: the library warns of a pool of one. */
+bool http_start(http *h) {
+  struct MHD_OptionItem pool[] = {{MHD_OPTION_THREAD_POOL_SIZE, h->settings.threads, NULL},
+                                  {MHD_OPTION_END, 0, NULL}};
+  if (h->settings.threads < 2) pool[0].option = MHD_OPTION_END;
+  h->daemon = MHD_start_daemon(
+      MHD_USE_EPOLL_INTERNAL_THREAD | MHD_ALLOW_SUSPEND_RESUME, 0, NULL, NULL, on_request, h,
+      MHD_OPTION_LISTEN_SOCKET, (MHD_socket)h->listening, MHD_OPTION_CONNECTION_LIMIT,
+      (unsigned)h->settings.connections, MHD_OPTION_CONNECTION_MEMORY_LIMIT, (size_t)MEMORY_LIMIT,
+      MHD_OPTION_CONNECTION_TIMEOUT, 0u, MHD_OPTION_STRICT_FOR_CLIENT, 1,
+      MHD_OPTION_URI_LOG_CALLBACK, on_target, h, MHD_OPTION_NOTIFY_COMPLETED, on_completed, h,
+      MHD_OPTION_NOTIFY_CONNECTION, on_connection, h, MHD_OPTION_ARRAY, pool, MHD_OPTION_END);
+  return h->daemon != NULL;
 }
 
 int http_port(const http *h) {
@@ -444,11 +441,12 @@ void http_count(http *h, int *connections, int *waiters) {
   watch_count(h->watch, connections, waiters);
 }
 
+/* A daemon whose listening socket was not taken from it would close that with itself. */
 void http_quiesce(http *h) {
-  if (h->quiet) return;
-  MHD_socket listening = MHD_quiesce_daemon(h->daemon);
-  if (listening != MHD_INVALID_SOCKET) close(listening);
-  h->quiet = true;
+  if (h->listening < 0) return;
+  if (h->daemon) (void)MHD_quiesce_daemon(h->daemon);
+  close(h->listening);
+  h->listening = -1;
 }
 
 void http_close(http *h, double seconds) {
@@ -459,6 +457,6 @@ void http_close(http *h, double seconds) {
   while (exchanges_of(h) > 0 && clock_steady() < until) usleep(2000);
   desk_close(h->desk); /* which resumes what it has: nothing may be suspended now */
   h->desk = NULL;
-  MHD_stop_daemon(h->daemon);
+  if (h->daemon) MHD_stop_daemon(h->daemon);
   free_http(h);
 }

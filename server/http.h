@@ -33,9 +33,12 @@ typedef struct http_app {
   void (*refused)(void *self, refusal why);
 } http_app;
 
-/* Listens and answers. NULL, with one line in message, if the address cannot be had or memory is
- * out. */
+/* Listens; nothing is answered before http_start, so that who opens it knows it first. NULL, with
+ * one line in message, if the address cannot be had or memory is out. */
 http *http_open(const http_settings *settings, const http_app *app, char *message, size_t size);
+
+/* Begins to answer. False if the threads cannot be had. */
+bool http_start(http *h);
 
 int http_port(const http *h);
 

@@ -91,7 +91,9 @@ static bool open_parts(service *s, char *message, size_t size) {
   snprintf(message, size, "the workers could not be started");
   if (!s->pool) return false;
   s->http = http_open(&web, &app, message, size);
-  return s->http != NULL;
+  if (!s->http) return false;
+  snprintf(message, size, "the threads of HTTP could not be started");
+  return http_start(s->http);
 }
 
 /* Workers call HTTP and HTTP calls the pool, so the workers end first and the pool goes last. */

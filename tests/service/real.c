@@ -14,7 +14,7 @@
 #include <sys/wait.h>
 #include <unistd.h>
 
-enum { CALLERS = 64, MOST_ARGUMENTS = 16 };
+enum { CALLERS = 64, FEW_CALLERS = 8, MOST_ARGUMENTS = 16 };
 
 #ifdef CORESOAK_SANITIZED
 static const bool measured =
@@ -87,13 +87,22 @@ static double serve(running *r, const char *const *flags) {
   return ready ? took : -1;
 }
 
+/* Shows what the service said, where that may help to see why it failed. */
+static void show_log(const running *r) {
+  char *log = read_file(r->log);
+  printf("%s", log ? log : "");
+  free(log);
+}
+
 /* Sends SIGTERM; returns the exit code, -1 if it does not end by itself. */
 static int terminate(const running *r) {
   int state;
   kill(r->pid, SIGTERM);
   for (int i = 0; i < 3000; i++) {
-    if (waitpid(r->pid, &state, WNOHANG) == r->pid)
+    if (waitpid(r->pid, &state, WNOHANG) == r->pid) {
+      if (state != 0) show_log(r);
       return WIFEXITED(state) ? WEXITSTATUS(state) : -1;
+    }
     usleep(10000);
   }
   kill(r->pid, SIGKILL);
@@ -167,20 +176,20 @@ static void same_bytes(void) {
   static const char *const flags[] = {"--connections", "256", NULL};
   caller callers[CALLERS];
   running r = {0};
-  int same = 0;
+  int same = 0, count = measured ? CALLERS : FEW_CALLERS;
   if (!check(serve(&r, flags) > 0, "the service starts")) return;
   answer alone = post(port, "/v1/solves", NULL, example);
   check(alone.status == 200 && alone.body.length > 500, "the example is solved (%d, %zu bytes)",
         alone.status, alone.body.length);
-  for (int i = 0; i < CALLERS; i++) pthread_create(&callers[i].thread, NULL, call, &callers[i]);
-  for (int i = 0; i < CALLERS; i++) {
+  for (int i = 0; i < count; i++) pthread_create(&callers[i].thread, NULL, call, &callers[i]);
+  for (int i = 0; i < count; i++) {
     pthread_join(callers[i].thread, NULL);
     const answer *a = &callers[i].answer;
     same += a->status == 200 && a->body.length == alone.body.length && alone.body.length > 0 &&
             memcmp(a->body.bytes, alone.body.bytes, a->body.length) == 0;
     answer_free(&callers[i].answer);
   }
-  check(same == CALLERS, "64 callers at once get the bytes of one alone (%d)", same);
+  check(same == count, "%d callers at once get the bytes of one alone (%d)", count, same);
 
   const char *const arguments[] = {program, "solve", example_path, NULL};
   char output[128];
