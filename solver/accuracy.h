@@ -40,7 +40,7 @@ void accuracy_free(accuracy *a);
 
 /* Error of a figure's value between the two runs, in its own unit; INFINITY if it cannot be told.
  */
-double accuracy_figure_error(const accuracy *a, const figure_value *fine,
+double accuracy_figure_error(const accuracy *a, int figure, const figure_value *fine,
                              const figure_value *coarse);
 
 /* One march by a plan, for references and benches: keep_every 1 or 2, stage durations imposed or

@@ -147,7 +147,11 @@ static status init_record(observer *o, arena *memory, fault *f) {
   }
   for (int i = 0; i < o->watch.count; i++)
     if (o->watch.trace[i].request.kind == TRACE_PLACE) o->place_trace[o->places++] = i;
-  if (o->reference) return STATUS_OK;
+  if (o->reference) {
+    o->last_difference = arena_array(
+        memory, (size_t)o->the_case->stages.count * (size_t)o->places + 1, sizeof(double));
+    return o->last_difference ? STATUS_OK : fail(f, STATUS_NO_MEMORY, "", "out of memory");
+  }
   record *r = &o->record;
   r->columns = o->places;
   r->capacity = o->the_case->stages.count * MOST_RECORD_ROWS;
@@ -197,6 +201,7 @@ static void compare_step(observer *o, double t1) {
       for (int i = 0; i < r->columns; i++) {
         double value = watch_value(&o->watch, o->place_trace[i], row->t);
         double difference = fabs(value - r->value[(size_t)o->reference_row * r->columns + i]);
+        o->last_difference[(size_t)o->stage * r->columns + i] = difference;
         if (!(difference <= o->difference)) o->difference = difference;
       }
     o->reference_row++;

@@ -10,7 +10,7 @@ enum { MOST_RECORD_ROWS = 200 }; /* of one stage; thinned beyond */
 
 /* The shortest time after a jump that counts in the comparison of two runs, as a share of the time
    to the next jump; history and fields count at their own instants however early. */
-#define EARLIEST_SHARE 5e-4
+#define EARLIEST_SHARE 2e-3
 
 typedef struct record_row {
   int stage;
@@ -62,7 +62,8 @@ typedef struct observer {
   record record;
   const struct observer *reference; /* compare with this run; NULL: be one */
   int reference_row;
-  double difference; /* K: largest at the record's rows */
+  double difference;       /* K: largest at the record's rows */
+  double *last_difference; /* [stages x places], K: at the last row of each stage */
   double
       end_difference[LIMIT_STAGES]; /* of the deciding leaf's value at the time of the reference */
 

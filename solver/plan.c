@@ -15,6 +15,7 @@ static const int ladder[] = {12,  16,  24,  32,  48,   64,   96,   128, 192,
 #define FIRST_TOLERANCE 0.15 /* of the numerical error, per step */
 #define END_CELL_OVER_PENETRATION                                                                  \
   0.09 /* with USUAL_CELLS: end cell over sqrt(diffusivity x shortest time of interest) */
+#define NARROW_PEAK 4.0
 #define USUAL_CELLS 24.0
 
 int plan_rung(double cells) {
@@ -156,11 +157,22 @@ void plan_end_cells(march_plan *p, const heat_case *c, const property *propertie
   }
 }
 
+/* A narrow peak of heat capacity passes through the mesh node by node and makes temperatures
+ * ripple. */
+static bool has_peak(const heat_case *c, const property *properties) {
+  for (int i = 0; i < c->part.layers.count; i++) {
+    const property *p = &properties[c->part.layers.items[i].material];
+    if (p->peak_capacity > NARROW_PEAK * p->reference_capacity) return true;
+  }
+  return false;
+}
+
 void plan_first(march_plan *p, const heat_case *c, const property *properties) {
   double error = c->numerical_error;
   p->halved = case_is_symmetric(c);
   p->cells = plan_rung(error >= 0.3 ? 24 : error >= 0.05 ? 32 : 48);
   if (c->part.layers.count > 2) p->cells = plan_rung(p->cells * 1.5);
+  if (has_peak(c, properties)) p->cells = plan_rung(p->cells * 2);
   p->tolerance = FIRST_TOLERANCE * error;
   plan_end_cells(p, c, properties);
 }

@@ -259,6 +259,7 @@ static void note_extremes(property *p, const stretch *s) {
   for (int i = 0; i <= 16; i++) {
     double t = s->from + (s->to - s->from) * i / 16, k = conductivity(s, t);
     double sensible = capacity(s, t);
+    if (sensible > p->peak_capacity) p->peak_capacity = sensible;
     if (s->latent > 0) {
       stretch bare = *s;
       bare.latent = 0;
@@ -310,7 +311,9 @@ status property_build(property *p, const material *m, double from, double to, in
     stretch s = stretch_of(m, k.at[i], k.at[i + 1]);
     add_stretch(&b, &s, rows_of(&s, to - from, intervals), stretch_heat(&s));
     double sharp = i + 2 < k.count ? sharp_heat(m, k.at[i + 1]) : 0;
-    if (sharp > 0) add_plateau(&b, k.at[i + 1], sharp);
+    if (!(sharp > 0)) continue;
+    add_plateau(&b, k.at[i + 1], sharp);
+    p->peak_capacity = INFINITY;
   }
   p->segment = b.segment;
   p->row = (const double(*)[8])b.row;
@@ -320,8 +323,8 @@ status property_build(property *p, const material *m, double from, double to, in
 
 /* The row of an enthalpy and the fraction in it; outside of the range the end rows' cubics would
    turn, so the fraction is kept in 0..1 and the rest is told apart in *beyond (J/m3). */
-static inline const double *row_in(const property *p, int s, double enthalpy, double *fraction, double *inverse,
-                                   double *beyond) {
+static inline const double *row_in(const property *p, int s, double enthalpy, double *fraction,
+                                   double *inverse, double *beyond) {
   const property_segment *segment = &p->segment[s];
   double x = (enthalpy - segment->start) * segment->inverse;
   int i = (int)x;
@@ -341,8 +344,8 @@ static inline int segment_of(const property *p, int guess, double enthalpy) {
   return guess;
 }
 
-static inline const double *row_of(const property *p, double enthalpy, double *fraction, double *inverse,
-                                   double *beyond) {
+static inline const double *row_of(const property *p, double enthalpy, double *fraction,
+                                   double *inverse, double *beyond) {
   return row_in(p, segment_of(p, 0, enthalpy), enthalpy, fraction, inverse, beyond);
 }
 
@@ -364,7 +367,8 @@ double property_potential(const property *p, double enthalpy, double *slope) {
   return cubic(row, f, inverse, beyond, slope);
 }
 
-void property_potentials(const property *p, int count, const double *enthalpy, double *potential, double *slope) {
+void property_potentials(const property *p, int count, const double *enthalpy, double *potential,
+                         double *slope) {
   double f, inverse, beyond, unused;
   int guess = 0;
   for (int i = 0; i < count; i++) {
@@ -374,7 +378,8 @@ void property_potentials(const property *p, int count, const double *enthalpy, d
   }
 }
 
-void property_temperatures(const property *p, int count, const double *enthalpy, double *temperature) {
+void property_temperatures(const property *p, int count, const double *enthalpy,
+                           double *temperature) {
   double f, inverse, beyond, slope;
   int guess = 0;
   for (int i = 0; i < count; i++) {

@@ -153,7 +153,7 @@ static status fill_figures(heat_result *r, const accuracy *a, fault *f) {
     g->kind->finish(&a->fine->observer.run[i], &out->value);
     g->kind->finish(&a->coarse->observer.run[i], &coarse);
     out->dimension = g->kind->dimension(g, c);
-    out->error = accuracy_figure_error(a, &out->value, &coarse);
+    out->error = accuracy_figure_error(a, i, &out->value, &coarse);
     out->margin = NAN;
     if (g->require) judge(out, g->require);
   }
