@@ -113,6 +113,9 @@ void read_faces(reader *r, const json_t *v, faces *out) {
     else if (face >= 0) {
       read_condition(r, value, &out->condition[face]);
       named[face] = true;
+    } else {
+      face_condition unused; /* for its faults */
+      read_condition(r, value, &unused);
     }
     path_pop(r, before);
   }
