@@ -27,6 +27,7 @@ static const shape *read_shape(reader *r, const json_t *v) {
     else
       fault_here(r, v, "unknown shape (plate, cylinder, sphere)%s%s%s",
                  near ? "; did you mean \"" : "", near ? near : "", near ? "\"?" : "");
+    if (near) s = shape_named(near); /* the rest is judged by what was meant */
   }
   path_pop(r, before);
   return s;
@@ -82,8 +83,8 @@ static void single_layer(reader *r, part *p, const json_t *v) {
 }
 
 static void check_layers(reader *r, part *p, const json_t *v) {
-  if (!p->layers.count)
-    fault_at(r, "layers", json_object_get(v, "layers"), "must have at least one layer");
+  if (json_is_array(json_object_get(v, "layers")) && !json_array_size(json_object_get(v, "layers")))
+    fault_at(r, "layers", NULL, "must have at least one layer");
   for (int i = 0; i < 2; i++) {
     const char *name = i ? "heat_generation" : "material";
     if (json_object_get(v, name))
@@ -235,8 +236,12 @@ bool read_location(reader *r, const json_t *v, location *out) {
   if (text && !strcmp(text, "mid_wall")) return put_in_layer(r, origin + extent / 2, NULL, out);
   if (json_is_object(v))
     return json_object_get(v, "face") ? from_face(r, v, out) : by_coordinate(r, v, out);
-  fault_here(r, v, "must be \"center\", \"mid_wall\", {\"face\": F, \"depth\": d} or {\"%s\": ...}",
-             p->shape->coordinates[0]);
+  static const char *const words[] = {"center", "mid_wall", NULL};
+  const char *near = text ? nearest_name(text, words) : NULL;
+  fault_here(r, v,
+             "must be \"center\", \"mid_wall\", {\"face\": F, \"depth\": d} or {\"%s\": ...}%s%s%s",
+             p->shape->coordinates[0], near ? "; did you mean \"" : "", near ? near : "",
+             near ? "\"?" : "");
   return false;
 }
 
