@@ -36,10 +36,9 @@ static void read_labels(reader *r, const json_t *v) {
 }
 
 static void read_instant_of_day(reader *r, const json_t *v, double *out) {
-  if (json_is_number(v))
-    *out = json_number_value(v);
-  else
-    fault_here(r, v, "must be a number of seconds since 1970-01-01T00:00:00Z");
+  if (!json_is_string(v) || !read_rfc3339(json_string_value(v), out))
+    fault_here(r, v,
+               "must be a moment as RFC 3339 with an offset, such as 2026-03-01T06:15:00+01:00");
 }
 
 static void read_job_member(reader *r, const char *name, const json_t *v, job_wishes *job) {
@@ -82,12 +81,22 @@ static void read_job(reader *r, const json_t *v) {
   path_pop(r, before);
 }
 
+static void unknown_kind(reader *r, const json_t *v) {
+  const char *names[8];
+  int n = 0;
+  for (int i = 0; job_kinds[i] && n < 7; i++) names[n++] = job_kinds[i]->name;
+  names[n] = NULL;
+  const char *near = json_is_string(v) ? nearest_name(json_string_value(v), names) : NULL;
+  fault_here(r, v, "unknown kind of job%s%s%s", near ? "; did you mean \"" : "", near ? near : "",
+             near ? "\"?" : "");
+}
+
 static const job_kind *read_kind(reader *r, const json_t *v, const job_kind *expected) {
   if (!v) return expected ? expected : job_kinds[0];
   size_t before = path_push(r, "kind");
   const job_kind *k = json_is_string(v) ? job_kind_named(json_string_value(v)) : NULL;
   if (!k)
-    fault_here(r, v, "unknown kind of job");
+    unknown_kind(r, v);
   else if (expected && k != expected)
     fault_here(r, v, "does not belong here: %s is expected", expected->name);
   path_pop(r, before);

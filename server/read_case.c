@@ -215,7 +215,7 @@ int read_solve(struct reader *r, void *json, document *d) {
   int faults = r->faults->found;
   r->given = json;
   r->root = r->no_memory ? NULL : expand_document(r, json);
-  if (r->root && !r->no_memory) {
+  if (r->root && !r->no_memory && r->expanded <= MOST_ELEMENTS) {
     read_members(r);
     if (!r->no_memory) check_case(r);
   }

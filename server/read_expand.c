@@ -21,8 +21,8 @@ static const char *reference(const json_t *v, const char **group) {
 
 static json_t *expand(reader *r, const json_t *v, const json_t *root, int depth);
 
-static json_t *expand_reference(reader *r, const json_t *v, const json_t *root, const char *name,
-                                const char *group, int depth) {
+static json_t *expand_reference(reader *r, const json_t *root, const char *name, const char *group,
+                                int depth) {
   const json_t *found = json_object_get(json_object_get(root, group), name);
   if (found && depth < MOST_DEPTH) return expand(r, found, root, depth + 1);
   const char *names[LIMIT_NAMED_SERIES + 1], *key;
@@ -37,8 +37,12 @@ static json_t *expand_reference(reader *r, const json_t *v, const json_t *root, 
   else
     fault_here(r, NULL, "there is no \"%s\" in `%s`%s%s%s", name, group,
                near ? "; did you mean \"" : "", near ? near : "", near ? "\"?" : "");
-  (void)v;
   return json_null();
+}
+
+/* Series within series could multiply without end. */
+static bool too_much(reader *r) {
+  return ++r->expanded > MOST_ELEMENTS;
 }
 
 static json_t *expand_object(reader *r, const json_t *v, const json_t *root, int depth) {
@@ -58,7 +62,8 @@ static json_t *expand_array(reader *r, const json_t *v, const json_t *root, int 
   json_t *copy = json_array();
   for (size_t i = 0; i < json_array_size(v); i++) {
     const json_t *item = json_array_get(v, i);
-    if (!json_is_object(item) && !json_is_array(item)) { /* numbers of long tables are shared */
+    if (!json_is_object(item) && !json_is_array(item) &&
+        !too_much(r)) { /* numbers of long tables are shared */
       if (!copy || json_array_append(copy, (json_t *)item)) r->no_memory = true;
       continue;
     }
@@ -71,26 +76,54 @@ static json_t *expand_array(reader *r, const json_t *v, const json_t *root, int 
 }
 
 static json_t *expand(reader *r, const json_t *v, const json_t *root, int depth) {
-  const char *group, *name = depth > 1 ? reference(v, &group) : NULL;
-  if (depth > 2 * MOST_DEPTH) return json_null();
-  if (name) return expand_reference(r, v, root, name, group, depth);
+  const char *group, *name = reference(v, &group);
+  if (depth > 2 * MOST_DEPTH || too_much(r)) return json_null();
+  if (name) return expand_reference(r, root, name, group, depth);
   if (json_is_object(v)) return expand_object(r, v, root, depth);
   if (json_is_array(v)) return expand_array(r, v, root, depth);
   return json_incref((json_t *)v);
+}
+
+/* An object whose keys are names of the caller's: one called "input" is no reference. */
+static json_t *expand_each(reader *r, const json_t *v, const json_t *root) {
+  return json_is_object(v) ? expand_object(r, v, root, 1) : json_incref((json_t *)v);
+}
+
+static void check_inputs(reader *r, const json_t *v) {
+  const char *name;
+  json_t *value;
+  size_t before = path_push(r, "inputs");
+  if (v && must_be_object(r, v)) {
+    json_object_foreach((json_t *)v, name, value) {
+      size_t inner = path_push(r, name);
+      if (!is_name(name)) fault_here(r, NULL, "a name has 1 to 64 letters, digits, _ or -");
+      if (!json_is_number(value) && !json_is_string(value))
+        fault_here(r, value, "must be a number, \"<number> <unit>\" or a material's name");
+      path_pop(r, inner);
+    }
+  }
+  path_pop(r, before);
 }
 
 json_t *expand_document(reader *r, const json_t *given) {
   json_t *copy = json_object();
   const char *key;
   json_t *value;
+  check_inputs(r, json_object_get(given, "inputs"));
   json_object_foreach((json_t *)given, key, value) {
     bool as_it_is = !strcmp(key, "logs") || !strcmp(key, "labels") || !strcmp(key, "inputs") ||
                     !strcmp(key, "title");
     size_t before = path_push(r, key);
-    json_t *inner = as_it_is ? json_incref(value) : expand(r, value, given, 1);
+    bool own_names = !strcmp(key, "series") || !strcmp(key, "materials");
+    json_t *inner = as_it_is    ? json_incref(value)
+                    : own_names ? expand_each(r, value, given)
+                                : expand(r, value, given, 1);
     if (!copy || !inner || json_object_set_new(copy, key, inner)) r->no_memory = true;
     path_pop(r, before);
   }
+  if (r->expanded > MOST_ELEMENTS)
+    fault_here(r, NULL, "has more than %d elements once its series are put in place",
+               MOST_ELEMENTS);
   return copy;
 }
 

@@ -2,8 +2,24 @@
  */
 #include "reader.h"
 
+#include <pthread.h>
 #include <stdio.h>
+#include <stdlib.h>
 #include <string.h>
+
+/* The JSON library tells a failed allocation as a fault of the text; so it is noted here. */
+static _Thread_local bool out_of_memory;
+
+static void *noting_malloc(size_t size) {
+  void *memory = malloc(size);
+  if (!memory) out_of_memory = true;
+  return memory;
+}
+
+static void prepare_library(void) {
+  json_set_alloc_funcs(noting_malloc, free);
+  json_object_seed(0);
+}
 
 typedef struct scan {
   const char *bytes;
@@ -74,17 +90,19 @@ static int prescan(scan *s) {
 
 json_t *parse_json(const char *bytes, size_t length, fault_list *faults) {
   scan s = {.bytes = bytes, .length = length, .faults = faults};
+  static pthread_once_t prepared = PTHREAD_ONCE_INIT;
   if (prescan(&s)) return NULL;
   json_error_t error;
+  pthread_once(&prepared, prepare_library);
+  out_of_memory = false;
   json_t *root = json_loadb(bytes, length, JSON_REJECT_DUPLICATES, &error);
   if (root && json_is_object(root)) return root;
   if (root) {
     json_decref(root);
-    s.at = 0;
-    refuse(&s, "must be a JSON object");
+    faults_add(faults, "", NULL, "must be an object");
     return NULL;
   }
-  if (json_error_code(&error) == json_error_out_of_memory) {
+  if (out_of_memory) {
     faults->no_memory = true;
     return NULL;
   }

@@ -102,6 +102,21 @@ static void read_history(reader *r, const json_t *v) {
   path_pop(r, before);
 }
 
+static void read_unit(reader *r, const char *name, const json_t *v) {
+  static const char *const names[] = {"temperature", "length", "time", NULL};
+  for (int i = 0; names[i]; i++) {
+    if (strcmp(names[i], name)) continue;
+    if (!json_is_string(v) || output_units_set(&r->document->units, name, json_string_value(v)))
+      fault_at(r, name, v,
+               "must be a unit of temperature (degC, degF, K), length (m, mm, cm, in, ft) or time "
+               "(s, min, h, d)");
+    return;
+  }
+  const char *near = nearest_name(name, names);
+  fault_at(r, name, NULL, "unknown member of units%s%s%s", near ? "; did you mean \"" : "",
+           near ? near : "", near ? "\"?" : "");
+}
+
 static void read_units(reader *r, const json_t *v) {
   output_units *u = &r->document->units;
   size_t before = path_push(r, "units");
@@ -111,12 +126,7 @@ static void read_units(reader *r, const json_t *v) {
     u->us = true;
     (void)(output_units_set(u, "temperature", "degF") + output_units_set(u, "length", "in"));
   } else if (json_is_object(v)) {
-    json_object_foreach((json_t *)v, name, value) {
-      if (!json_is_string(value) || output_units_set(u, name, json_string_value(value)))
-        fault_at(r, name, value,
-                 "must be a unit of temperature (degC, degF, K), length (m, mm, cm, in, ft) or "
-                 "time (s, min, h, d)");
-    }
+    json_object_foreach((json_t *)v, name, value) read_unit(r, name, value);
   } else if (!text || strcmp(text, "si")) {
     fault_here(r, v, "must be \"si\", \"us\", or an object with temperature, length, time");
   }

@@ -45,6 +45,16 @@ static bool text_quantity(reader *r, const json_t *v, dimension d, double *out) 
   return false;
 }
 
+bool in_scale(reader *r, const json_t *got, dimension d, double *value) {
+  if (d != DIMENSION_TEMPERATURE || *value >= 0) return true;
+  if (*value < -BELOW_ZERO) {
+    fault_here(r, got, "is below absolute zero, -273.15 degC");
+    return false;
+  }
+  *value = 0;
+  return true;
+}
+
 bool read_quantity(reader *r, const json_t *v, dimension d, double *out) {
   double value;
   bool good = json_is_number(v) ? bare_number(r, v, d, &value)
@@ -58,13 +68,7 @@ bool read_quantity(reader *r, const json_t *v, dimension d, double *out) {
     fault_here(r, v, "must be finite");
     return false;
   }
-  if (d == DIMENSION_TEMPERATURE && value < 0) {
-    if (value < -BELOW_ZERO) {
-      fault_here(r, v, "is below absolute zero, -273.15 degC");
-      return false;
-    }
-    value = 0;
-  }
+  if (!in_scale(r, v, d, &value)) return false;
   *out = value;
   return true;
 }

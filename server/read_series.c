@@ -14,16 +14,7 @@ typedef struct column_units {
 
 static bool in_column(reader *r, const json_t *v, const char *unit, dimension d, double *out) {
   if (!unit || !json_is_number(v)) return read_quantity(r, v, d, out);
-  unit_outcome outcome = quantity_in_unit(json_number_value(v), unit, d, out);
-  if (outcome != UNIT_OK) {
-    fault_here(r, v, "the column's unit %s does not fit a %s", unit, dimension_name(d));
-    return false;
-  }
-  if (d == DIMENSION_TEMPERATURE && *out < -1e-9) {
-    fault_here(r, v, "is below absolute zero, -273.15 degC");
-    return false;
-  }
-  return true;
+  return quantity_in_unit(json_number_value(v), unit, d, out) == UNIT_OK && in_scale(r, v, d, out);
 }
 
 static bool read_row(reader *r, const json_t *row, const column_units *units, const dimension d[2],
@@ -77,17 +68,26 @@ bool read_table(reader *r, const json_t *v, dimension x, dimension y, bool stric
   return read_rows(r, v, &none, d, strict, out);
 }
 
-static bool read_units(reader *r, const json_t *object, column_units *units) {
+/* The units of the columns of a table, each of which must fit. */
+static bool read_units(reader *r, const json_t *object, const dimension d[2], column_units *units) {
   const json_t *v = json_object_get(object, "units");
+  double unused;
   *units = (column_units){{NULL, NULL}};
   if (!v) return true;
   size_t before = path_push(r, "units");
   bool good = json_is_array(v) && json_array_size(v) == 2;
-  for (size_t k = 0; good && k < 2; k++) {
-    units->name[k] = json_string_value(json_array_get(v, k));
-    good = units->name[k] != NULL;
-  }
   if (!good) fault_here(r, v, "must name the units of the two columns");
+  for (size_t k = 0; good && k < 2; k++) {
+    const json_t *unit = json_array_get(v, k);
+    units->name[k] = json_string_value(unit);
+    size_t inner = path_push_index(r, k);
+    if (!units->name[k] || quantity_in_unit(1, units->name[k], d[k], &unused) != UNIT_OK) {
+      fault_here(r, unit, "must be a unit of %s, such as %s", dimension_name(d[k]),
+                 dimension_unit(d[k]));
+      good = false;
+    }
+    path_pop(r, inner);
+  }
   path_pop(r, before);
   return good;
 }
@@ -96,7 +96,7 @@ bool read_table_of(reader *r, const json_t *object, const char *member, dimensio
                    table *out) {
   column_units units;
   dimension d[2] = {x, y};
-  if (!read_units(r, object, &units)) return false;
+  if (!read_units(r, object, d, &units)) return false;
   size_t before = path_push(r, member);
   bool good = read_rows(r, json_object_get(object, member), &units, d, false, out);
   path_pop(r, before);
@@ -153,14 +153,6 @@ static bool ramp(reader *r, const json_t *v, dimension d, series *out) {
     return true;
   }
   return two_rows(r, out, (double[2]){0, fabs(f.to - f.from) / f.rate}, (double[2]){f.from, f.to});
-}
-
-static bool tabled(reader *r, const json_t *whole, const json_t *v, dimension d, series *out) {
-  column_units units;
-  if (!read_units(r, whole, &units)) return false;
-  dimension ds[2] = {DIMENSION_TIME, d};
-  out->kind = SERIES_TABLE;
-  return read_rows(r, v, &units, ds, false, &out->table);
 }
 
 static bool sine(reader *r, const json_t *v, dimension d, series *out) {
@@ -259,10 +251,8 @@ static bool line(reader *r, const json_t *v, dimension d, series *out) {
 static const char *const forms[] = {"ramp", "table",  "sine",  "fire", "line",
                                     "log",  "series", "input", NULL};
 
-static bool by_form(reader *r, const json_t *whole, const char *form, const json_t *v, dimension d,
-                    series *out) {
+static bool by_form(reader *r, const char *form, const json_t *v, dimension d, series *out) {
   if (!strcmp(form, "ramp")) return ramp(r, v, d, out);
-  if (!strcmp(form, "table")) return tabled(r, whole, v, d, out);
   if (!strcmp(form, "sine")) return sine(r, v, d, out);
   if (!strcmp(form, "fire")) return fire(r, v, d, out);
   if (!strcmp(form, "line")) return line(r, v, d, out);
@@ -291,8 +281,12 @@ static bool read_form(reader *r, const json_t *v, dimension d, series *out) {
              near ? "\"?" : "");
     return false;
   }
+  if (!strcmp(form, "table")) {
+    out->kind = SERIES_TABLE;
+    return read_table_of(r, v, form, DIMENSION_TIME, d, &out->table);
+  }
   size_t before = path_push(r, form);
-  bool good = by_form(r, v, form, json_object_get(v, form), d, out);
+  bool good = by_form(r, form, json_object_get(v, form), d, out);
   path_pop(r, before);
   return good;
 }
@@ -316,101 +310,43 @@ bool read_series(reader *r, const json_t *v, dimension d, double least, double m
   return d == DIMENSION_TEMPERATURE || in_range(r, out, least, most);
 }
 
-bool read_coefficient(reader *r, const json_t *v, coefficient *out) {
-  const json_t *rows = json_is_object(v) ? json_object_get(v, "by_surface_temperature") : NULL;
-  if (!rows) {
-    out->by_surface_temperature = false;
-    if (json_is_object(v) && json_object_size(v) == 1) {
-      const char *only = json_object_iter_key(json_object_iter((json_t *)v));
-      static const char *const own[] = {"by_surface_temperature", NULL};
-      if (nearest_name(only, own)) {
-        fault_at(r, only, NULL, "unknown member; did you mean \"by_surface_temperature\"?");
-        return false;
-      }
-    }
-    return read_series(r, v, DIMENSION_COEFFICIENT, 0, 1e12, &out->over_time);
-  }
+static const char by_surface[] = "by_surface_temperature";
+
+/* {"by_surface_temperature": rows, "units": ...}, strictly rising, none negative. */
+static bool read_by_surface(reader *r, const json_t *v, table *out) {
   column_units units;
-  dimension d[2] = {DIMENSION_TEMPERATURE, DIMENSION_COEFFICIENT};
-  out->by_surface_temperature = true;
+  const dimension d[2] = {DIMENSION_TEMPERATURE, DIMENSION_COEFFICIENT};
+  const json_t *rows = json_object_get(v, by_surface);
   const char *name;
   json_t *value;
-  json_object_foreach((json_t *)v, name,
-                      value) if (strcmp(name, "by_surface_temperature") && strcmp(name, "units"))
+  json_object_foreach((json_t *)v, name, value) {
+    if (strcmp(name, by_surface) && strcmp(name, "units"))
       fault_at(r, name, NULL, "unknown member of a coefficient");
-  if (!read_units(r, v, &units)) return false;
-  size_t before = path_push(r, "by_surface_temperature");
-  bool good = read_rows(r, rows, &units, d, true, &out->over_temperature);
-  for (int i = 0; good && i < out->over_temperature.count; i++)
-    if (out->over_temperature.y[i] < 0) {
-      fault_here(r, NULL, "a heat transfer coefficient must be at least 0 (row %d)", i);
-      good = false;
-    }
+  }
+  if (!read_units(r, v, d, &units)) return false;
+  size_t before = path_push(r, by_surface);
+  bool good = read_rows(r, rows, &units, d, true, out);
+  for (int i = 0; good && i < out->count; i++) {
+    if (out->y[i] >= 0) continue;
+    size_t inner = path_push_index(r, (size_t)i);
+    fault_here(r, json_array_get(rows, (size_t)i), "a coefficient must be at least 0");
+    good = false;
+    path_pop(r, inner);
+  }
   path_pop(r, before);
   return good;
 }
 
-/* ---- named series ---- */
-
-/* What a series is used for decides its dimension: looked for where {"series": NAME} stands. */
-static dimension dimension_of_use(const json_t *v, const char *member, const char *name,
-                                  int depth) {
-  static const struct {
-    const char *member;
-    dimension d;
-  } uses[] = {{"h", DIMENSION_COEFFICIENT},
-              {"flux", DIMENSION_FLUX},
-              {"heat_generation", DIMENSION_GENERATION}};
-  const char *used = json_is_object(v) ? json_string_value(json_object_get(v, "series")) : NULL;
-  if (used && !strcmp(used, name)) {
-    for (int i = 0; i < COUNT_OF(uses); i++)
-      if (!strcmp(uses[i].member, member)) return uses[i].d;
-    return DIMENSION_TEMPERATURE;
+bool read_coefficient(reader *r, const json_t *v, coefficient *out) {
+  static const char *const own[] = {by_surface, NULL};
+  out->by_surface_temperature = json_is_object(v) && json_object_get(v, by_surface);
+  if (out->by_surface_temperature) return read_by_surface(r, v, &out->over_temperature);
+  const char *only = json_is_object(v) && json_object_size(v) == 1
+                         ? json_object_iter_key(json_object_iter((json_t *)v))
+                         : NULL;
+  if (only && nearest_name(only, own)) {
+    fault_at(r, only, NULL, "unknown member; did you mean \"%s\"?", by_surface);
+    return false;
   }
-  dimension found = DIMENSION_ANY;
-  const char *key;
-  json_t *value;
-  if (depth > 2 * MOST_DEPTH) return found;
-  json_object_foreach((json_t *)v, key, value) {
-    if (found == DIMENSION_ANY) found = dimension_of_use(value, key, name, depth + 1);
-  }
-  for (size_t i = 0; json_is_array(v) && found == DIMENSION_ANY && i < json_array_size(v); i++)
-    if (!json_is_number(json_array_get(v, i)))
-      found = dimension_of_use(json_array_get(v, i), member, name, depth + 1);
-  return found;
-}
-
-int add_named_series(reader *r, const char *name, dimension d, const series *s) {
-  heat_case *c = r->the_case;
-  if (!c->series.items && !(c->series.items = take(r, LIMIT_NAMED_SERIES, sizeof(named_series))))
-    return -1;
-  if (c->series.count == LIMIT_NAMED_SERIES) {
-    fault_here(r, NULL, "more than %d series", LIMIT_NAMED_SERIES);
-    return -1;
-  }
-  named_series *item = &c->series.items[c->series.count];
-  *item = (named_series){
-      .name = arena_text(r->memory, name, strlen(name)), .dimension = d, .series = *s};
-  if (!item->name) r->no_memory = true;
-  return item->name ? c->series.count++ : -1;
-}
-
-void read_named_series(reader *r, const json_t *v) {
-  if (!must_be_object(r, v)) return;
-  size_t count = json_object_size(v);
-  if (count > LIMIT_NAMED_SERIES) {
-    fault_here(r, NULL, "has %zu series; the limit is %d", count, LIMIT_NAMED_SERIES);
-    return;
-  }
-  const char *name;
-  json_t *value;
-  json_object_foreach((json_t *)v, name, value) {
-    size_t before = path_push(r, name);
-    series s;
-    dimension d = dimension_of_use(r->given, "", name, 0);
-    if (d == DIMENSION_ANY) d = DIMENSION_TEMPERATURE;
-    if (!is_name(name)) fault_here(r, NULL, "a name has 1 to 64 letters, digits, _ or -");
-    if (read_series(r, value, d, -INFINITY, INFINITY, &s)) add_named_series(r, name, d, &s);
-    path_pop(r, before);
-  }
+  return read_series(r, v, DIMENSION_COEFFICIENT, 0, 1e12, &out->over_time);
 }

@@ -24,6 +24,7 @@ typedef struct reader {
   char path[LONGEST_PATH];
   size_t length;
   bool no_memory;
+  size_t expanded; /* elements of the finished document so far */
   bool in_library; /* reading a file of the library */
   bool shapeless;  /* the shape is unknown: its faces and coordinates cannot be judged */
 } reader;
@@ -68,6 +69,11 @@ bool check_members(reader *r, const json_t *object, const object_type *first,
 
 /* One quantity by its dimension; false after a fault. */
 bool read_quantity(reader *r, const json_t *v, dimension d, double *out);
+/* A temperature below absolute zero is a fault, within round-off of it is put on it; any other
+   value passes. */
+bool in_scale(reader *r, const json_t *got, dimension d, double *value);
+/* "2026-03-01T06:15:00+01:00" (RFC 3339, offset required) to s since 1970-01-01T00:00Z. */
+bool read_rfc3339(const char *text, double *out);
 /* The same within the range of a row. */
 bool read_ranged(reader *r, const json_t *v, const parameter *row, dimension d, double *out);
 bool read_contact(reader *r, const json_t *v, double *out);
