@@ -10,7 +10,9 @@
    afterwards, and why in *why (a constant).
 
    Not seen here, because the library has already normalised it: line feeds without carriage return,
-   folded header lines, white space inside chunk sizes, what follows a NUL in a header line. */
+   folded header lines, white space inside chunk sizes, what follows a NUL in a header line, a
+   header without a name. What the library cannot parse at all it answers itself, with a page
+   instead of a problem document. */
 int audit_request(const request *q, const char **why);
 
 /* A trace context of version 00 to fe that the W3C's recommendation calls valid. */

@@ -99,6 +99,11 @@ static bool claim(pool *p, bool *later) {
   job_view job;
   claim_outcome outcome = s->claim(s, &job);
   *later = outcome == CLAIM_LATER;
+  if (outcome == CLAIM_EXPIRED) {
+    p->settings.ended(p->settings.self, job.id, &job);
+    s->release(s, &job);
+    return true;
+  }
   if (outcome != CLAIM_TAKEN) return false;
   active *a = new_active(p, &job);
   if (!a) {

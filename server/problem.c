@@ -32,6 +32,7 @@ static const problem_row by_http_status[] = {
     {501, "not-implemented", "The request uses what is not offered"},
     {503, "busy", "The service cannot take this now"},
     {504, "out-of-time", "The job did not end within its time"},
+    {505, "version", "The version of HTTP is not offered"},
     {507, "full", "The service has no room to store this"},
 };
 

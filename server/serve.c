@@ -8,9 +8,13 @@
 
 #include <math.h>
 #include <signal.h>
+#include <stdbool.h>
 #include <stdio.h>
 #include <string.h>
+#include <sys/resource.h>
 #include <unistd.h>
+
+enum { OTHER_DESCRIPTORS = 64 };
 
 /* Blocks the signals that end the service, before any thread exists, so that only sigwait sees
  * them. */
@@ -33,6 +37,28 @@ static int write_port(const char *path, int port) {
   int failed = fprintf(f, "%d\n", port) < 0;
   failed |= fclose(f) != 0;
   return failed || rename(beside, path) != 0 ? -1 : 0;
+}
+
+/* As many descriptors as the connections need, if the system lets us. */
+static void allow_descriptors(int connections) {
+  struct rlimit limit;
+  rlim_t wanted = (rlim_t)connections + OTHER_DESCRIPTORS;
+  if (getrlimit(RLIMIT_NOFILE, &limit) != 0 || limit.rlim_cur >= wanted) return;
+  limit.rlim_cur = wanted < limit.rlim_max ? wanted : limit.rlim_max;
+  setrlimit(RLIMIT_NOFILE, &limit);
+  if (limit.rlim_cur < wanted)
+    log_event(LOG_LEVEL_WARNING, "few_descriptors", "note",
+              "the system allows fewer open files than --connections asks for");
+}
+
+/* There is no key at this door: who may come in is for the address or a proxy to decide. */
+static void warn_of_open_address(const char *listen) {
+  bool here = strncmp(listen, "127.", 4) == 0 || strncmp(listen, "[::1]:", 6) == 0 ||
+              strncmp(listen, "localhost:", 10) == 0;
+  if (!here)
+    log_event(LOG_LEVEL_WARNING, "open_address", "note",
+              "whoever reaches this address may use the service: keep it inside a trusted network "
+              "or behind a proxy that asks who is calling");
 }
 
 static void log_start(const service *s, double seconds) {
@@ -69,6 +95,7 @@ int command_serve(const options *o) {
   int signal_number, outcome = EXIT_BAD_INPUT;
   faults_init(&faults);
   hold_signals(&ending);
+  allow_descriptors(o->connections);
   service *s = NULL;
   library *materials = library_open(&faults);
   if (!materials) {
@@ -85,6 +112,7 @@ int command_serve(const options *o) {
     goto out;
   }
   log_start(s, clock_steady() - began);
+  warn_of_open_address(o->listen);
   sigwait(&ending, &signal_number);
   log_event(LOG_LEVEL_INFO, "stopping", "signal", signal_number == SIGINT ? "SIGINT" : "SIGTERM");
   outcome = EXIT_GOOD;

@@ -49,15 +49,17 @@ typedef struct job_filter {
 typedef enum claim_outcome {
   CLAIM_TAKEN,
   CLAIM_NONE,
-  CLAIM_LATER
-} claim_outcome; /* LATER: only jobs not yet due */
+  CLAIM_LATER,  /* only jobs that are not yet due */
+  CLAIM_EXPIRED /* a job was due no more, and failed; ask again */
+} claim_outcome;
 
 typedef struct store store;
 struct store {
   /* Takes the document over on success. Returns 0 and the id, -1 if the store is full, -2 out of
    * memory. */
   int (*add)(store *s, document *d, const char *trace, char id[40]);
-  /* Takes for a worker the queued and due job of the highest priority, of those the oldest. */
+  /* Takes for a worker the queued and due job of the highest priority, of those the oldest. A view
+   * with CLAIM_TAKEN and CLAIM_EXPIRED. */
   claim_outcome (*claim)(store *s, job_view *out);
   void (*progress)(store *s, const char *id, double fraction);
   /* Ends a running job; takes the outcome's answer and text over. A job cancelled meanwhile stays

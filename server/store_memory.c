@@ -217,10 +217,15 @@ static claim_outcome memory_claim(store *s, job_view *out) {
   claim_outcome outcome = CLAIM_NONE;
   double now = clock_wall();
   pthread_mutex_lock(&m->mutex);
-  for (job *j = m->queue.first, *next; j && outcome != CLAIM_TAKEN; j = next) {
+  for (job *j = m->queue.first, *next; j && outcome != CLAIM_TAKEN && outcome != CLAIM_EXPIRED;
+       j = next) {
     next = j->rest.after;
     if (j->document->job.expires_at <= now) {
+      j->holders++; /* it may be the next to be dropped */
       fail_job(m, j, STATUS_OUT_OF_TIME, "the job expired before it could be started");
+      show(j, out);
+      j->holders--;
+      outcome = CLAIM_EXPIRED;
     } else if (j->document->job.not_before > now) {
       outcome = CLAIM_LATER;
     } else {

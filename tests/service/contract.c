@@ -294,11 +294,13 @@ static void failures(void) {
     const char *json;
     int status;
     const char *what;
-  } cases[] = {{"{\"inputs\": {\"fails\": 2}}", 422, "a job beyond a limit"},
-               {"{\"inputs\": {\"fails\": 6}}", 422, "a job that does not converge"},
-               {"{\"inputs\": {\"fails\": 10}}", 422, "an answer that cannot be written"},
-               {"{\"inputs\": {\"seconds\": 9}, \"job\": {\"time_limit\": 0.2}}", 504,
-                "a job over its own time limit"}};
+  } cases[] = {
+      {"{\"inputs\": {\"fails\": 2}}", 422, "a job beyond a limit"},
+      {"{\"inputs\": {\"fails\": 6}}", 422, "a job that does not converge"},
+      {"{\"inputs\": {\"fails\": 10}}", 422, "an answer that cannot be written"},
+      {"{\"inputs\": {\"seconds\": 9}, \"job\": {\"time_limit\": 0.2}}", 504,
+       "a job over its own time limit"},
+      {"{\"job\": {\"expires_at\": \"2020-01-01T00:00:00Z\"}}", 504, "a job that has expired"}};
   for (size_t i = 0; i < sizeof cases / sizeof cases[0]; i++) {
     answer a = post(port, "/v1/trials", NULL, cases[i].json);
     check(a.status == cases[i].status && has(&a, "Content-Type", "application/problem+json"),
@@ -336,7 +338,7 @@ static void lists(void) {
   json_t *job;
   json_array_foreach(jobs, i, job) failed +=
       !strcmp(json_string_value(json_object_get(job, "state")), "failed");
-  check(failed == 4 && json_array_size(jobs) == 4, "four jobs failed, and only they are listed");
+  check(failed == 5 && json_array_size(jobs) == 5, "five jobs failed, and only they are listed");
   json_decref(j);
   answer_free(&a);
   expect(ask(port, "GET", "/v1/jobs?state=lost", NULL, NULL), 400, "a state that does not exist");

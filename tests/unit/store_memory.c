@@ -126,6 +126,10 @@ Test(store_memory, not_before_and_expires_at) {
   d->job.expires_at = clock_wall() - 1;
   add(s, d, late);
   add(s, make(&kind, 0), now);
+  cr_assert_eq(s->claim(s, &v), CLAIM_EXPIRED);
+  cr_assert_str_eq(v.id, late);
+  cr_assert_eq(v.state, JOB_FAILED);
+  s->release(s, &v);
   cr_assert_eq(s->claim(s, &v), CLAIM_TAKEN);
   cr_assert_str_eq(v.id, now);
   s->release(s, &v);
