@@ -52,7 +52,7 @@ static json_t *expand_object(reader *r, const json_t *v, const json_t *root, int
   json_object_foreach((json_t *)v, key, value) {
     size_t before = path_push(r, key);
     inner = expand(r, value, root, depth + 1);
-    if (!copy || !inner || json_object_set_new(copy, key, inner)) r->no_memory = true;
+    if (json_object_set_new(copy, key, inner)) r->no_memory = true;
     path_pop(r, before);
   }
   return copy;
@@ -64,12 +64,12 @@ static json_t *expand_array(reader *r, const json_t *v, const json_t *root, int 
     const json_t *item = json_array_get(v, i);
     if (!json_is_object(item) && !json_is_array(item) &&
         !too_much(r)) { /* numbers of long tables are shared */
-      if (!copy || json_array_append(copy, (json_t *)item)) r->no_memory = true;
+      if (json_array_append(copy, (json_t *)item)) r->no_memory = true;
       continue;
     }
     size_t before = path_push_index(r, i);
     json_t *inner = expand(r, item, root, depth + 1);
-    if (!copy || !inner || json_array_append_new(copy, inner)) r->no_memory = true;
+    if (json_array_append_new(copy, inner)) r->no_memory = true;
     path_pop(r, before);
   }
   return copy;
@@ -118,7 +118,7 @@ json_t *expand_document(reader *r, const json_t *given) {
     json_t *inner = as_it_is    ? json_incref(value)
                     : own_names ? expand_each(r, value, given)
                                 : expand(r, value, given, 1);
-    if (!copy || !inner || json_object_set_new(copy, key, inner)) r->no_memory = true;
+    if (json_object_set_new(copy, key, inner)) r->no_memory = true;
     path_pop(r, before);
   }
   if (r->expanded > MOST_ELEMENTS)

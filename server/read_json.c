@@ -2,24 +2,8 @@
  */
 #include "reader.h"
 
-#include <pthread.h>
 #include <stdio.h>
-#include <stdlib.h>
 #include <string.h>
-
-/* The JSON library tells a failed allocation as a fault of the text; so it is noted here. */
-static _Thread_local bool out_of_memory;
-
-static void *noting_malloc(size_t size) {
-  void *memory = malloc(size);
-  if (!memory) out_of_memory = true;
-  return memory;
-}
-
-static void prepare_library(void) {
-  json_set_alloc_funcs(noting_malloc, free);
-  json_object_seed(0);
-}
 
 typedef struct scan {
   const char *bytes;
@@ -41,11 +25,11 @@ static void locate(const char *bytes, size_t at, int *line, int *column) {
   }
 }
 
-static int refuse(scan *s, const char *why) {
+static int refuse(scan *s, int status, const char *why) {
   int line, column;
   locate(s->bytes, s->at, &line, &column);
   faults_add(s->faults, "", NULL, "%s (line %d, column %d)", why, line, column);
-  s->faults->status = 400;
+  s->faults->status = status;
   return -1;
 }
 
@@ -63,51 +47,85 @@ static size_t utf8_length(const unsigned char *p, size_t left) {
   return n;
 }
 
+static int count_element(scan *s) {
+  return ++s->elements > MOST_ELEMENTS ? refuse(s, 422, "more than 2000000 elements") : 0;
+}
+
+/* The text that begins at the quote where the scan stands; leaves it behind the closing quote. */
+static int scan_text(scan *s) {
+  size_t begin = s->at++;
+  while (s->at < s->length && s->bytes[s->at] != '"') {
+    bool escape = s->bytes[s->at] == '\\' && s->at + 1 < s->length;
+    size_t at = s->at + escape;
+    size_t n = utf8_length((const unsigned char *)s->bytes + at, s->length - at);
+    s->at = at + n;
+    if (!n) return refuse(s, 400, "not valid UTF-8");
+    if (s->at - begin > LONGEST_TEXT) return refuse(s, 422, "a text of more than 65536 bytes");
+  }
+  s->at++;
+  return 0;
+}
+
 /* Depth, number of elements and characters, before any memory is taken for the tree. */
 static int prescan(scan *s) {
-  bool text = false;
   while (s->at < s->length) {
     unsigned char c = (unsigned char)s->bytes[s->at];
-    size_t n = utf8_length((const unsigned char *)s->bytes + s->at, s->length - s->at);
-    if (!n) return refuse(s, "not valid UTF-8");
-    if (text) {
-      if (c == '\\' && s->at + 1 < s->length && (unsigned char)s->bytes[s->at + 1] < 0x80) n = 2;
-      if (c == '"') text = false;
-    } else if (c == '"') {
-      text = true;
-    } else if (c == '[' || c == '{') {
-      if (++s->depth > MOST_DEPTH) return refuse(s, "nested more than 32 deep");
-      s->elements++;
-    } else if (c == ']' || c == '}') {
-      s->depth--;
-    } else if (c == ',' && ++s->elements > MOST_ELEMENTS) {
-      return refuse(s, "more than 2000000 elements");
+    if (c == '"') {
+      if (scan_text(s)) return -1;
+      continue;
     }
-    s->at += n;
+    if (c >= 0x80) {
+      if (!utf8_length((const unsigned char *)s->bytes + s->at, s->length - s->at))
+        return refuse(s, 400, "not valid UTF-8");
+      return refuse(s, 400, "not JSON: a character outside of a text");
+    }
+    if ((c == '[' || c == '{') && ++s->depth > MOST_DEPTH)
+      return refuse(s, 400, "nested more than 32 deep");
+    if (c == ']' || c == '}') s->depth--;
+    if ((c == '[' || c == '{' || c == ',') && count_element(s)) return -1;
+    s->at++;
   }
   return 0;
 }
 
-json_t *parse_json(const char *bytes, size_t length, fault_list *faults) {
-  scan s = {.bytes = bytes, .length = length, .faults = faults};
-  static pthread_once_t prepared = PTHREAD_ONCE_INIT;
-  if (prescan(&s)) return NULL;
+static size_t next_piece(void *out, size_t room, void *context) {
+  scan *s = context;
+  if (parsing_lacks_memory()) return (size_t)-1;
+  size_t left = s->length - s->at, n = left < room ? left : room;
+  memcpy(out, s->bytes + s->at, n);
+  s->at += n;
+  return n;
+}
+
+/* Parses text that the scan found sound. */
+static json_t *parse(scan *s) {
   json_error_t error;
-  pthread_once(&prepared, prepare_library);
-  out_of_memory = false;
-  json_t *root = json_loadb(bytes, length, JSON_REJECT_DUPLICATES, &error);
-  if (root && json_is_object(root)) return root;
-  if (root) {
+  s->at = 0;
+  json_t *root = json_load_callback(next_piece, s, JSON_REJECT_DUPLICATES, &error);
+  if (parsing_lacks_memory()) {
+    s->faults->no_memory = true;
     json_decref(root);
-    faults_add(faults, "", NULL, "must be an object");
     return NULL;
   }
-  if (out_of_memory) {
+  if (root && json_is_object(root)) return root;
+  if (root)
+    faults_add(s->faults, "", NULL, "must be an object");
+  else
+    faults_add(s->faults, "", NULL, "not JSON: %s (line %d, column %d)", error.text, error.line,
+               error.column);
+  s->faults->status = root ? 422 : 400;
+  json_decref(root);
+  return NULL;
+}
+
+json_t *parse_json(const char *bytes, size_t length, fault_list *faults) {
+  scan s = {.bytes = bytes, .length = length, .faults = faults};
+  if (prescan(&s)) return NULL;
+  if (!parsing_begins()) {
     faults->no_memory = true;
     return NULL;
   }
-  faults_add(faults, "", NULL, "not JSON: %s (line %d, column %d)", error.text, error.line,
-             error.column);
-  faults->status = 400;
-  return NULL;
+  json_t *root = parse(&s);
+  parsing_ends();
+  return root;
 }

@@ -9,7 +9,7 @@
 
 #include <jansson.h>
 
-enum { LONGEST_PATH = 512, MOST_DEPTH = 32, MOST_ELEMENTS = 2000000 };
+enum { LONGEST_PATH = 512, MOST_DEPTH = 32, MOST_ELEMENTS = 2000000, LONGEST_TEXT = 1 << 16 };
 
 /* The reading of one document. Every function that can meet a fault adds it at the current path and
  * goes on. */
@@ -117,6 +117,11 @@ int layer_named(const reader *r, const char *name);
 
 /* ---- whole ---- */
 
+/* Around the parsing of one document in this thread (read_memory.c). parsing_begins returns false
+   out of memory; after parsing_lacks_memory the tree is to be thrown away before parsing_ends. */
+bool parsing_begins(void);
+bool parsing_lacks_memory(void);
+void parsing_ends(void);
 /* JSON bytes to a tree with the limits of depth, elements and characters; faults carry line and
  * column. */
 json_t *parse_json(const char *bytes, size_t length, fault_list *faults);
