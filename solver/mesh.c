@@ -98,7 +98,8 @@ static void share_cells(int *cells, const heat_case *c, const mesh_plan *plan,
                         const property *properties) {
   int layers = computed_layers(c, plan->halved);
   double sum = 0;
-  int fewest = even_at_least(plan->cells * LEAST_SHARE, FEWEST_CELLS);
+  int whole = plan->halved ? 2 * plan->cells : plan->cells;
+  int fewest = even_at_least(whole * LEAST_SHARE, FEWEST_CELLS);
   for (int i = 0; i < layers; i++) sum += layer_weight(c, properties, i);
   for (int i = 0; i < layers; i++)
     cells[i] = even_at_least(plan->cells * layer_weight(c, properties, i) / sum, fewest);

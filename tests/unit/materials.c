@@ -1,6 +1,6 @@
 /* materials: the library against other printed sources, and rules that hold for every file. */
 #include "library.h"
-#include "limits.h"
+#include "limit.h"
 #include "physics.h"
 
 #include <criterion/criterion.h>
