@@ -72,13 +72,6 @@ static double conductance_between(double a, double b, int power, bool around_axi
 
 /* ---- shares of the layers ---- */
 
-/* Diffusion length of a layer: thickness / sqrt(diffusivity). */
-static double layer_weight(const heat_case *c, const property *properties, int layer) {
-  const struct layer *l = &c->part.layers.items[layer];
-  const property *p = &properties[l->material];
-  return l->thickness / sqrt(p->largest_conductivity / p->reference_capacity);
-}
-
 static int even_at_least(double cells, int least) {
   int n = 2 * (int)(cells / 2 + 0.5);
   return n < least ? least : n;
@@ -94,15 +87,24 @@ static double computed_thickness(const heat_case *c, int layer, bool halved) {
   return halved && count % 2 && layer == count / 2 ? whole / 2 : whole;
 }
 
+/* Diffusion length of a layer: thickness / sqrt(diffusivity). */
+static double layer_weight(const heat_case *c, const property *properties, int layer, bool halved) {
+  const struct layer *l = &c->part.layers.items[layer];
+  const property *p = &properties[l->material];
+  return computed_thickness(c, layer, halved) /
+         sqrt(p->largest_conductivity / p->reference_capacity);
+}
+
 static void share_cells(int *cells, const heat_case *c, const mesh_plan *plan,
                         const property *properties) {
   int layers = computed_layers(c, plan->halved);
   double sum = 0;
   int whole = plan->halved ? 2 * plan->cells : plan->cells;
   int fewest = even_at_least(whole * LEAST_SHARE, FEWEST_CELLS);
-  for (int i = 0; i < layers; i++) sum += layer_weight(c, properties, i);
+  for (int i = 0; i < layers; i++) sum += layer_weight(c, properties, i, plan->halved);
   for (int i = 0; i < layers; i++)
-    cells[i] = even_at_least(plan->cells * layer_weight(c, properties, i) / sum, fewest);
+    cells[i] =
+        even_at_least(plan->cells * layer_weight(c, properties, i, plan->halved) / sum, fewest);
 }
 
 /* ---- building ---- */
