@@ -88,6 +88,17 @@ static void read_choice(reader *r, const json_t *v, const parameter *row, int *o
              near ? near : "", near ? "\"?" : "");
 }
 
+static void read_choices(reader *r, const json_t *v, const parameter *row, unsigned *out) {
+  if (!must_be_array(r, v, 32, "names")) return;
+  for (size_t i = 0; i < json_array_size(v); i++) {
+    int choice = -1;
+    size_t before = path_push_index(r, i);
+    read_choice(r, json_array_get(v, i), row, &choice);
+    if (choice >= 0) *out |= 1u << choice;
+    path_pop(r, before);
+  }
+}
+
 static void read_name(reader *r, const json_t *v, const char **out) {
   if (!must_be_text(r, v)) return;
   if (!is_name(json_string_value(v)) || strlen(json_string_value(v)) != json_string_length(v)) {
@@ -159,6 +170,7 @@ static void read_member(reader *r, const json_t *v, const parameter *row, const 
     break;
   case VALUE_NAME: read_name(r, v, (const char **)at); break;
   case VALUE_CHOICE: read_choice(r, v, row, (int *)at); break;
+  case VALUE_CHOICES: read_choices(r, v, row, (unsigned *)at); break;
   case VALUE_OBJECT:
     if (must_be_object(r, v)) read_object(r, v, row->of, NULL, NULL, at);
     break;

@@ -69,7 +69,9 @@ void schema_list_of(schema_writer *w, const object_type *t) {
   int most = LIMIT_ZONES;
   for (size_t i = 0; i < sizeof limits / sizeof limits[0]; i++)
     if (limits[i].type == t) most = limits[i].most;
-  buffer_format(w->b, "\"type\": \"array\", \"minItems\": 1, \"maxItems\": %d, \"items\": {", most);
+  bool may_be_empty = t == &point_type || t == &figure_type || t == &latent_heat_type;
+  buffer_format(w->b, "\"type\": \"array\", \"minItems\": %d, \"maxItems\": %d, \"items\": {",
+                may_be_empty ? 0 : 1, most);
   schema_refer_type(w, t);
   buffer_text(w->b, "}");
 }
@@ -98,6 +100,7 @@ static form form_of(value_kind kind) {
   case VALUE_COUNT_OF:
   case VALUE_FLAG:
   case VALUE_CHOICE:
+  case VALUE_CHOICES:
   case VALUE_OBJECT:
   case VALUE_OPTIONAL:
   case VALUE_LIST:
@@ -119,6 +122,11 @@ static void write_value(schema_writer *w, const parameter *p) {
     buffer_format(w->b, "\"type\": \"string\", \"maxLength\": %d", LIMIT_TEXT);
     break;
   case VALUE_CHOICE: write_choices(w, p); break;
+  case VALUE_CHOICES:
+    buffer_text(w->b, "\"type\": \"array\", \"items\": {");
+    write_choices(w, p);
+    buffer_text(w->b, "}");
+    break;
   case VALUE_OBJECT:
   case VALUE_OPTIONAL: schema_refer_type(w, p->of); break;
   case VALUE_LIST: schema_list_of(w, p->of); break;

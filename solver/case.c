@@ -37,7 +37,47 @@ static const parameter latent_heat_rows[] = {
 const object_type latent_heat_type = TYPE("latent_heat", latent_heat, latent_heat_rows,
                                           "Heat released evenly between two temperatures");
 
+const char *const material_trait_names[] = {"metal", "heating_only", "liquid", "melts", NULL};
+
+/* Offsets count from material.valid_from. */
+static const parameter valid_range_rows[] = {
+    {.name = "from",
+     .kind = VALUE_QUANTITY,
+     .dimension = DIMENSION_TEMPERATURE,
+     .offset = 0,
+     .flags = REQUIRED,
+     .least = 0,
+     .most = INFINITY,
+     .fallback = NAN,
+     .about = "Lowest temperature for which the source gives values"},
+    {.name = "to",
+     .kind = VALUE_QUANTITY,
+     .dimension = DIMENSION_TEMPERATURE,
+     .offset = offsetof(material, valid_to) - offsetof(material, valid_from),
+     .flags = REQUIRED,
+     .least = 0,
+     .most = INFINITY,
+     .fallback = NAN,
+     .about = "Highest temperature for which it does"},
+};
+const object_type valid_range_type = {.name = "valid_range",
+                                      .about = "Where a material's values are valid",
+                                      .size = 2 * sizeof(double),
+                                      .parameters = valid_range_rows,
+                                      .count = COUNT_OF(valid_range_rows)};
+
 static const parameter material_rows[] = {
+    MEMBER(material, "title", VALUE_TEXT, title, 0, NULL, "One line that says what it is"),
+    MEMBER(material, "source", VALUE_TEXT, source, 0, NULL,
+           "Where the numbers come from; stands in the record of every result"),
+    MEMBER(material, "revision", VALUE_TEXT, revision, 0, NULL, "Of the numbers"),
+    MEMBER(material, "note", VALUE_TEXT, note, 0, NULL, "What whoever uses it must know"),
+    MEMBER(material, "valid", VALUE_OBJECT, valid_from, 0, &valid_range_type,
+           "Where the values are valid: the result warns beyond; the range of the tables unless "
+           "given"),
+    MEMBER(material, "traits", VALUE_CHOICES, traits, 0, material_trait_names,
+           "What advice goes by: metal; heating_only (its specific heat holds the heat of "
+           "transformation as on heating); liquid; melts (liquid above its last latent heat)"),
     ROW(material, "conductivity", VALUE_CURVE, CONDUCTIVITY, conductivity, REQUIRED | ABOVE, 0,
         INFINITY, NAN, NULL, "Thermal conductivity"),
     ROW(material, "density", VALUE_CURVE, DENSITY, density, REQUIRED | ABOVE, 0, INFINITY, NAN,

@@ -218,7 +218,8 @@ typedef struct heat_case {
 
 /* Members of every object of a case, for the reader and the schema (case.c). `part` has those of its shape
    (shape.h) and these; a figure those of its kind (figure.h) and these. */
-extern const object_type part_type, layer_type, material_type, latent_heat_type, stage_type, until_type, point_type,
+extern const char *const material_trait_names[]; /* in the order of the bits of enum material_traits */
+extern const object_type valid_range_type, part_type, layer_type, material_type, latent_heat_type, stage_type, until_type, point_type,
     figure_type, requirement_type, output_type, history_type, fields_type, start_type, case_type;
 
 /* The forms of one node of an `until` and of a start, before names are resolved. */

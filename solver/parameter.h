@@ -60,6 +60,7 @@ typedef enum value_kind {
   VALUE_TEXT,        /* const char * */
   VALUE_NAME,        /* const char *: a unique name made of letters, digits, _ and - */
   VALUE_CHOICE,      /* int: index into `of`, a NULL-terminated const char *const [] */
+  VALUE_CHOICES,     /* unsigned: a list of names out of `of`, a bit for each */
   VALUE_OBJECT,      /* struct in place, described by `of`, an object_type; its own defaults if absent */
   VALUE_OPTIONAL,    /* pointer to a struct described by `of`; NULL if absent */
   VALUE_LIST,        /* LIST(struct) described by `of` */

@@ -177,6 +177,19 @@ static void expect_finished(const document *d, json_t *wanted) {
   json_decref(finished);
 }
 
+/* The finished case is a case too, and the same one. */
+static void expect_same_again(const document *d) {
+  fault_list faults;
+  document *again = NULL;
+  faults_init(&faults);
+  if (document_read(d->finished, d->finished_length, d->kind, materials, &again, &faults))
+    complain("its finished case is refused: %s %s", faults.items[0].at, faults.items[0].is);
+  else if (strcmp(d->hash, again->hash))
+    complain("its finished case has another hash%s%s", "", "");
+  document_free(again);
+  faults_free(&faults);
+}
+
 static void check_valid(const char *folder) {
   fault_list faults;
   json_t *expect = expectation(folder), *facts = NULL;
@@ -194,6 +207,7 @@ static void check_valid(const char *folder) {
   expect_facts(facts, json_object_get(expect, "document"));
   json_decref(facts);
   expect_finished(d, json_object_get(expect, "finished"));
+  expect_same_again(d);
   expect_warnings(d, json_object_get(expect, "warnings"));
   expect_hash(d, json_object_get(expect, "hash as"), true);
   expect_hash(d, json_object_get(expect, "hash unlike"), false);
