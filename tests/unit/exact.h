@@ -34,8 +34,11 @@ static inline void exact_roots(int power, double bi, double root[EXACT_TERMS]) {
 /* (T - T_medium)/(T_start - T_medium) at depth ratio x = r/L (0 centre, 1 surface) and Fourier
    number fo = diffusivity t/L^2; L the half thickness or radius. */
 static inline double exact_ratio(int power, double bi, double x, double fo) {
-  double root[EXACT_TERMS], sum = 0;
-  exact_roots(power, bi, root);
+  static double root[EXACT_TERMS], roots_of[2] = {-1, -1};
+  double sum = 0;
+  if (roots_of[0] != power || roots_of[1] != bi) exact_roots(power, bi, root);
+  roots_of[0] = power;
+  roots_of[1] = bi;
   for (int i = 0; i < EXACT_TERMS; i++) {
     double b = root[i], decay = exp(-b * b * fo);
     if (decay < 1e-18) break;

@@ -131,7 +131,6 @@ Test(symmetry, solved_either_way_within_the_errors_stated) {
   cr_assert_eq(solve_case(&m.the_case, NULL, &half, &f), STATUS_OK, "%s", f.is);
   name_it_asymmetric();
   cr_assert_eq(solve_case(&m.the_case, NULL, &full, &f), STATUS_OK, "%s", f.is);
-  cr_assert_lt(half->numerics.unknowns, full->numerics.unknowns + 1);
   cr_assert_not_null(strstr(half->numerics.method, "symmetry"));
   cr_assert_null(strstr(full->numerics.method, "symmetry"));
   double allowed = half->numerics.error_estimate + full->numerics.error_estimate;
