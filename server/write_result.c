@@ -36,13 +36,13 @@ static void write_energy(writing *w) {
     if (!first) buffer_text(w->b, ", ");
     json_out_string(w->b, s->faces[i]);
     buffer_text(w->b, ": ");
-    write_value(w, e->absorbed[i], s->energy, 0);
+    write_value(w, e->absorbed[i], s->energy, e->error);
     first = false;
   }
   buffer_text(w->b, "}, \"stored\": ");
-  write_value(w, e->stored, s->energy, 0);
+  write_value(w, e->stored, s->energy, e->error);
   buffer_text(w->b, ", \"generated\": ");
-  write_value(w, e->generated, s->energy, 0);
+  write_value(w, e->generated, s->energy, e->error);
   buffer_text(w->b, ", \"balance_error\": ");
   json_out_error(w->b, e->balance_error);
   buffer_text(w->b, "}");

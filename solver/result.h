@@ -50,6 +50,7 @@ typedef struct energy_balance {
   double absorbed[MOST_FACES]; /* per face, in the shape's energy unit, positive into the part */
   double stored, generated;    /* likewise */
   double balance_error;        /* residual over the larger of the heat that moved and half of the enthalpy range x volume */
+  double error;                /* numerical, of each heat above: largest difference of the two runs */
 } energy_balance;
 
 typedef struct numerics {

@@ -214,20 +214,29 @@ static double half_capacity(const mesh *m) {
   return 0.5 * sum;
 }
 
-static void fill_energy(heat_result *r, const accuracy *a) {
-  const attempt *t = a->fine;
+static void heats_of(const attempt *t, energy_balance *e) {
   const mesh *m = &t->mesh;
   const double *heat = t->stepper.heat;
   double both = m->halved ? 2 : 1;
-  energy_balance *e = &r->energy;
   e->faces = 2;
   e->absorbed[0] = heat[HEAT_FIRST] * m->whole;
   e->absorbed[1] = (m->halved ? heat[HEAT_FIRST] : heat[HEAT_LAST]) * m->whole;
   e->generated = heat[HEAT_GENERATED] * m->whole * both;
   e->stored = (t->outcome.final_content - t->outcome.initial_content) * m->whole * both;
+}
+
+static void fill_energy(heat_result *r, const accuracy *a) {
+  const attempt *t = a->fine;
+  const double *heat = t->stepper.heat;
+  energy_balance *e = &r->energy, coarse = {0};
+  heats_of(t, e);
+  heats_of(a->coarse, &coarse);
+  e->error = fabs(e->stored - coarse.stored);
+  for (int i = 0; i < e->faces; i++)
+    e->error = fmax(e->error, fabs(e->absorbed[i] - coarse.absorbed[i]));
   double given = heat[HEAT_FIRST] + heat[HEAT_LAST] + heat[HEAT_GENERATED];
   double residual = t->outcome.final_content - t->outcome.initial_content - given;
-  e->balance_error = fabs(residual) / fmax(t->outcome.heat_moved, half_capacity(m));
+  e->balance_error = fabs(residual) / fmax(t->outcome.heat_moved, half_capacity(&t->mesh));
   if (t->outcome.rested) e->balance_error = fmax(e->balance_error, t->outcome.rest_residual);
 }
 
