@@ -237,10 +237,10 @@ static void large_documents(void) {
   port = service_port(s);
   buffer large;
   buffer_init(&large, 0);
-  buffer_text(&large, "{\"inputs\": {\"bytes\": 600000, \"note\": \"");
-  while (large.length < HUGE_BODY - 19) buffer_text(&large, "aaaaaaaaaaaaaaaa");
-  while (large.length < HUGE_BODY - 3) buffer_text(&large, "b");
-  buffer_text(&large, "\"}}");
+  buffer_text(&large, "{\"inputs\": {\"bytes\": 600000, \"values\": [0");
+  while (large.length < HUGE_BODY - 19) buffer_text(&large, ", 850.123456789");
+  while (large.length < HUGE_BODY - 3) buffer_text(&large, " ");
+  buffer_text(&large, "]}}");
   for (int i = 0; i < 4; i++) {
     wire_open(&senders[i], port, 30);
     wire_text(&senders[i], HEADERS "Content-Length: 8388608\r\n\r\n");
