@@ -3,7 +3,7 @@
 #include "clock.h"
 #include "trial.h"
 
-#include <pthread.h>
+#include <poll.h>
 #include <stdio.h>
 #include <stdlib.h>
 #include <string.h>
@@ -229,10 +229,21 @@ static void crowd(void) {
   check(closed == CROWD, "all 60 were told 408 (%d)", closed);
 }
 
+/* True once each of these connections has something to read. */
+static bool all_answered(const wire *w, int count) {
+  bool all = true;
+  for (int i = 0; i < count && all; i++) {
+    struct pollfd p = {w[i].socket, POLLIN, 0};
+    all = poll(&p, 1, 0) == 1;
+  }
+  return all;
+}
+
 /* Documents of megabytes are read beside the threads that answer others, and to the end. */
 static void large_documents(void) {
   static const char *const flags[] = {"--body-limit", "8MiB", NULL};
-  wire senders[4];
+  enum { SENDERS = 4 };
+  wire senders[SENDERS];
   service *s = trial_open(flags);
   port = service_port(s);
   buffer large;
@@ -241,22 +252,26 @@ static void large_documents(void) {
   while (large.length < HUGE_BODY - 19) buffer_text(&large, ", 850.123456789");
   while (large.length < HUGE_BODY - 3) buffer_text(&large, " ");
   buffer_text(&large, "]}}");
-  for (int i = 0; i < 4; i++) {
+  for (int i = 0; i < SENDERS; i++) {
     wire_open(&senders[i], port, 30);
     wire_text(&senders[i], HEADERS "Content-Length: 8388608\r\n\r\n");
     wire_send(&senders[i], large.bytes, large.length);
   }
   double worst = 0;
-  for (int i = 0; i < 50; i++) {
+  int asked = 0;
+  while (!all_answered(senders, SENDERS)) {
     double began = clock_steady();
     answer a = ask(port, "GET", "/healthz", NULL, NULL);
     double took = clock_steady() - began;
     if (a.status != 200 || took > worst) worst = took;
+    asked += a.status == 200;
     answer_free(&a);
+    usleep(2000);
   }
-  check(worst < 0.1, "/healthz while four documents of 8 MB are read: slowest %.4f s", worst);
+  check(asked > 10 && worst < 0.1,
+        "/healthz %d times while four documents of 8 MB are read: slowest %.4f s", asked, worst);
   char location[128], rows[160];
-  for (int i = 0; i < 4; i++) {
+  for (int i = 0; i < SENDERS; i++) {
     answer a;
     wire_read(&senders[i], &a, false);
     check(a.status == 200 && a.body.length > 600000, "document %d is answered (%d)", i + 1,
