@@ -1,6 +1,7 @@
 /* accuracy.c: fine and coarse, and finer until the difference is small enough. */
 #include "accuracy.h"
 
+#include "elementary.h"
 #include "shape.h"
 
 #include <math.h>
@@ -8,7 +9,8 @@
 #include <string.h>
 
 #define COARSE_TOLERANCE 8.0 /* of the coarse twin's steps over the fine run's */
-#define MOST_WORK        4e7 /* nodes x steps of one run: some four seconds on one core */
+#define MOST_WORK        3e7 /* nodes x steps of one run: some three seconds on one core */
+#define HOPELESS         2.0 /* of MOST_WORK: foreseen work beyond it is not begun */
 #define FAR_OFF          5.0 /* of the numerical error: beyond it the mesh is to blame, and is not asked */
 #define TABLE_INTERVALS  512
 #define SPACE_SHARE                                                                                \
@@ -197,18 +199,33 @@ static status space_part(accuracy *a, double worst, double *space, fault *f) {
   return bad;
 }
 
-/* Chooses the next plan from the two parts of the error; false when the limits leave no room. */
+/* Factor on the cells that the mesh's part of the error asks for, by the order seen between two
+ * meshes (1 to 2). */
+static double finer_by_order(const accuracy *a, double ratio) {
+  double order = 2;
+  if (a->last_cells > 0 && a->plan.cells > a->last_cells && a->last_space > 0)
+    order = elementary_log(a->last_space / (ratio * SPACE_SHARE * a->the_case->numerical_error)) /
+            elementary_log((double)a->plan.cells / a->last_cells);
+  order = fmin(2, fmax(1, order));
+  return elementary_exp(elementary_log(ratio) / order);
+}
+
+/* Chooses the next plan from the two parts of the error; false when the limits leave no room, or
+ * foreseeably will not. */
 static bool refine(accuracy *a, double space, double time) {
-  double target = a->the_case->numerical_error;
+  double target = a->the_case->numerical_error, ratio = space / (SPACE_SHARE * target);
   double work = (double)a->fine->stepper.nodes * a->fine->outcome.steps;
-  double finer =
-      space > SPACE_SHARE * target ? fmin(4, fmax(1.3, sqrt(space / (SPACE_SHARE * target)))) : 1;
+  double wanted = ratio > 1 ? finer_by_order(a, ratio) : 1,
+         finer = ratio > 1 ? fmin(4, fmax(1.3, wanted)) : 1;
   double sharper =
       time > TIME_SHARE * target ? fmin(16, fmax(2, 1.3 * time / (TIME_SHARE * target))) : 1;
   if (finer == 1 && sharper == 1) sharper = 2;
   int cells = finer > 1 ? plan_rung(a->plan.cells * finer) : a->plan.cells;
   if (finer > 1 && cells == a->plan.cells) return false;
-  if (work * finer * sqrt(sqrt(sharper)) > MOST_WORK) return false;
+  if (work * finer * sqrt(sqrt(sharper)) > MOST_WORK || work * wanted > HOPELESS * MOST_WORK)
+    return false;
+  a->last_space = space;
+  a->last_cells = a->plan.cells;
   a->plan.tolerance /= sharper;
   a->plan.cells = cells;
   plan_end_cells(&a->plan, a->the_case, a->properties);

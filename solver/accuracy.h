@@ -26,7 +26,9 @@ typedef struct accuracy {
   double from, to;      /* K: range of the tables */
   march_plan plan;      /* of the runs kept */
   attempt *fine, *coarse;
-  double estimate; /* K */
+  double last_space; /* K: the mesh's part of the error on the mesh before */
+  int last_cells;    /* its cells; 0: there was none */
+  double estimate;   /* K */
   int runs;
   double progress; /* fraction told so far */
   arena memory;
