@@ -17,7 +17,7 @@ typedef struct made {
   heat_case the_case;
   material material[MADE_MATERIALS];
   piece piece[MADE_MATERIALS][3][MADE_PIECES]; /* k, density, c */
-  latent_heat latent[MADE_MATERIALS][2];
+  latent_heat latent[MADE_MATERIALS][4];
   layer layer[MADE_LAYERS];
   stage stage[MADE_STAGES];
   condition_node node[MADE_STAGES][8];
