@@ -162,6 +162,16 @@ Test(march, breaks_of_generation_and_of_logs_count_too) {
   cr_assert(lands_on(&n, 150 + 222), "of the generation, from the start of the stage");
   cr_assert(lands_on(&n, 750));
   free_run(&r);
+  generation.from_case_start = true;
+  memset(&n, 0, sizeof n);
+  ready();
+  run_with(&n, 0.2);
+  cr_assert(lands_on(&n, 222) && lands_on(&n, 500));
+  cr_assert_not(lands_on(&n, 150 + 222));
+  /* 150 s + 72 s at 1e5 W/m3, then from 9e5 down to 0 over 278 s, in 0.04 m */
+  double generated = 0.04 * (222 * 1e5 + 278 * 9e5 / 2);
+  cr_assert_float_eq(r.stepper.heat[HEAT_GENERATED], generated, 1e-10 * generated);
+  free_run(&r);
 }
 
 Test(march, stages_follow_each_other) {

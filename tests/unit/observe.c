@@ -254,6 +254,26 @@ Test(observe, the_difference_is_the_largest_of_points_rows_and_fields) {
   free_attempt(&t);
 }
 
+/* Right after a shock the mean differs by what the half cell at the front holds; the record does
+   not look so early, but a row of the history that was asked for does. */
+Test(observe, an_early_row_counts_however_early) {
+  static const double times[] = {0.01};
+  plate();
+  m.the_case.output.history.of.count = 0;
+  m.the_case.stages.count = 1;
+  m.stage[0].faces.condition[0] = prescribed(constant(700));
+  add_column(&m, COLUMN_PLACE, whole_place(PLACE_MEAN), 0);
+  history_at(&m, 1, times);
+  const history *h = run();
+  attempt *twin = twin_of(&t, 0.4);
+  double of_row = fabs(h->value[0] - twin->observer.history.value[0]);
+  cr_assert_gt(of_row, 1.01 * twin->observer.difference, "%g, record %g", of_row,
+               twin->observer.difference);
+  cr_assert_eq(observe_difference(&t.attempt->observer, &twin->observer), of_row);
+  attempt_free(twin);
+  free_attempt(&t);
+}
+
 Test(observe, a_run_compared_with_itself_does_not_differ) {
   plate();
   history_every(&m, 7);

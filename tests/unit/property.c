@@ -291,6 +291,13 @@ Test(property, latent_heat_in_the_table_in_closed_form) {
   }
 }
 
+Test(property, latent_heat_is_no_sensible_capacity) {
+  int i = add_material(&m, 30, 7000, 600);
+  add_latent(&m, i, 270e3, 1700, 1730);
+  build(i, 1705, 1725, 64); /* wholly inside */
+  cr_assert_float_eq(fast.reference_capacity, 7000 * 600.0, 1e-9 * 7000 * 600);
+}
+
 Test(property, a_start_on_a_plateau_is_on_the_liquid_side) {
   int i = add_material(&m, 30, 7000, 600);
   add_latent(&m, i, 270e3, 1700, 1700);

@@ -85,7 +85,7 @@ static conditions conditions_of(const original *o, const double b[S]) {
 }
 
 /* Coefficients are printed with 16 digits, and U is sums of products up to 40. */
-#define PRINTED 1e-13
+#define PRINTED 1e-14
 
 static void check_order_three(const conditions *c, double u) {
   cr_assert_float_eq(c->tau1, u, PRINTED);

@@ -120,6 +120,17 @@ Test(until, within_a_band_over_an_extreme) {
   check_end(end_by(1, &node, 100, 5000), exact + 100);
 }
 
+Test(until, a_band_has_two_sides) {
+  static const double x[] = {0, 400}, y[] = {500, 300};
+  condition_node node = leaf(UNTIL_WITHIN, front, 380, 20);
+  plate(rows(2, x, y), 0); /* falls by 0.5 K/s from above */
+  check_end(end_by(1, &node, 0, 5000), 200);
+  plate(rows(2, x, y), 0); /* inside for 80 s only, from 200 to 280 s */
+  stage_result never = end_by(1, &node, 81, 1000);
+  cr_assert_eq(never.ended_by, ENDED_TIME_LIMIT);
+  free_attempt(&t);
+}
+
 Test(until, true_at_the_start_ends_the_stage_at_once) {
   condition_node node = leaf(UNTIL_FALLS_TO, mean, 300.5, 0);
   plate((series){0}, 2e4);
