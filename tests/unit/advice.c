@@ -1,7 +1,7 @@
 /* advice: every warning that is known before a case runs, once provoked and once not. The tube
    blank below is the quiet case from which each test departs. */
 #include "figure.h"
-#include "limits.h"
+#include "limit.h"
 #include "physics.h"
 #include "shape.h"
 #include "solve.h"
