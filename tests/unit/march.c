@@ -85,7 +85,13 @@ static march_outcome outcome;
 
 static status march_with(notes *n, double tolerance, const double *durations,
                          const solve_control *control, fault *f) {
-  march_watch w = {n, note_begin, never_at_start, never, note_step, note_jump, note_rest};
+  march_watch w = {.self = n,
+                   .begins = note_begin,
+                   .fulfilled_at_start = never_at_start,
+                   .event = never,
+                   .accepted = note_step,
+                   .jumped = note_jump,
+                   .rests = note_rest};
   march_request q = {.the_case = &m.the_case,
                      .tolerance = tolerance,
                      .durations = durations,
@@ -457,7 +463,11 @@ static void begin_only(void *self, int stage, double start, stepper *s) {
 
 Test(march, steps_have_a_limit) {
   int steps = 0;
-  march_watch w = {&steps, begin_only, never_at_start, never, count_only, NULL, NULL};
+  march_watch w = {.self = &steps,
+                   .begins = begin_only,
+                   .fulfilled_at_start = never_at_start,
+                   .event = never,
+                   .accepted = count_only};
   march_request q = {.the_case = &m.the_case, .tolerance = 1, .watch = &w};
   fault f = {0};
   plate(convects(10, wave(400, 5, 1.6, 0)), 0.1 * LIMIT_STEPS * 1.01);
@@ -541,7 +551,12 @@ Test(march, nothing_is_allocated_between_the_first_and_the_last_step) {
   add_figure(&m, "at", point_place(1));
   make_attempt(&t, &m, 200, 1500, 24);
   spy y = {.inner = &t.attempt->observer.march};
-  march_watch w = {&y, spy_begins, spy_at_start, spy_event, spy_accepted, spy_jumped, NULL};
+  march_watch w = {.self = &y,
+                   .begins = spy_begins,
+                   .fulfilled_at_start = spy_at_start,
+                   .event = spy_event,
+                   .accepted = spy_accepted,
+                   .jumped = spy_jumped};
   march_request q = {.the_case = &m.the_case, .tolerance = 0.1, .watch = &w};
   int before = allocations;
   status s = march(&q, &t.attempt->stepper, &t.attempt->outcome, &t.fault);
