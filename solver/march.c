@@ -259,10 +259,18 @@ static status march_interval(leg *l, double to, fault *f) {
   return STATUS_OK;
 }
 
+/* A stage that was over when it began, repeated by a twin: its conditions still act on prescribed
+ * ends. */
+static void pass_stage(leg *l) {
+  enter_interval(l, 0, 0, true);
+  if (l->request->watch->passed) l->request->watch->passed(l->request->watch->self, l->s);
+}
+
 static status march_stage(leg *l, fault *f) {
   stepper *s = l->s;
   double t = 0;
   bool anew = true;
+  if (l->request->durations && !(l->end > 0)) pass_stage(l);
   while (t < l->end && !l->fulfilled) {
     double to = fmin(next_break(l, t), l->end);
     if (l->end - to < 1e-9 * l->end) to = l->end;

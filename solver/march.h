@@ -19,6 +19,8 @@ typedef struct march_watch {
   void (*accepted)(void *self, stepper *s, bool ends); /* called before the stepper moves on */
   void (*jumped)(void *self, double t);                /* conditions jump at t: steps start anew */
   void (*rests)(void *self, stepper *s, double start); /* the steady state of the last stage */
+  void (*passed)(void *self,
+                 stepper *s); /* an imposed end that left a stage no time; may be NULL */
 } march_watch;
 
 typedef struct march_request {

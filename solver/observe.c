@@ -360,6 +360,10 @@ static bool fulfilled_at_start(void *self, stepper *s) {
   return true;
 }
 
+static void passed(void *self, stepper *s) {
+  instant_seen(self, s);
+}
+
 static double event(void *self, stepper *s) {
   observer *o = self;
   watch_step(&o->watch, s, o->start, false);
@@ -425,6 +429,7 @@ status observe_init(observer *o, const heat_case *c, const mesh *m, const observ
                            .event = event,
                            .accepted = accepted,
                            .jumped = jumped,
+                           .passed = passed,
                            .rests = rests};
   return bad;
 }
