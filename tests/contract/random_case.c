@@ -74,7 +74,7 @@ static const char *any_material(maker *m, int layer, char *name, size_t size) {
     double k, capacity;
   } library[] = {{"carbon_steel", 35, 5e6},
                  {"stainless_steel", 20, 4.5e6},
-                 {"aluminium", 220, 2.6e6},
+                 {"alloy_600", 20, 4.5e6},
                  {"fireclay_brick", 1.2, 2e6}};
   if (!chance_is(&m->c, 0.3)) return own_material(m, layer, name, size);
   int i = chance_count(&m->c, 0, 3);
