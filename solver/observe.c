@@ -139,7 +139,24 @@ static void figures_see(observer *o, const segment *g) {
 
 /* ---- the record ---- */
 
+/* A figure that looks at profiles or at heat uses temperatures too: the extremes of the section, or
+ * the face. */
+static int add_places_of(observer *o, const figure *g) {
+  place extremes[2] = {{.kind = PLACE_COLDEST, .layer = -1}, {.kind = PLACE_HOTTEST, .layer = -1}};
+  if (g->kind->takes_place) return 0;
+  for (int i = 0; i < 2; i++) {
+    place face = {.kind = PLACE_FACE, .index = i, .layer = -1};
+    bool of_heat = g->kind->trace != TRACE_PLACE;
+    if (of_heat && g->face >= 0 && g->face != i) continue;
+    if (watch_add_place(&o->watch, of_heat ? &face : &extremes[i]) < 0) return -1;
+  }
+  return 0;
+}
+
 static status init_record(observer *o, arena *memory, fault *f) {
+  for (int i = 0; i < o->the_case->figures.count; i++)
+    if (add_places_of(o, &o->the_case->figures.items[i]))
+      return fail(f, STATUS_BEYOND_LIMIT, "", "too many places are watched");
   for (int i = 0; i < o->the_case->points.count; i++) {
     place p = {.kind = PLACE_POINT, .index = i, .layer = -1};
     if (watch_add_place(&o->watch, &p) < 0)
