@@ -8,9 +8,9 @@
 #include <stdlib.h>
 #include <string.h>
 
-#define COARSE_TOLERANCE 8.0 /* of the coarse twin's steps over the fine run's */
-#define MOST_WORK        3e7 /* nodes x steps of one run: some three seconds on one core */
-#define HOPELESS         2.0 /* of MOST_WORK: foreseen work beyond it is not begun */
+#define COARSE_TOLERANCE 8.0  /* of the coarse twin's steps over the fine run's */
+#define MOST_WORK        3e7  /* nodes x steps of one run: some three seconds on one core */
+#define HOPELESS         15.0 /* of MOST_WORK: foreseen work beyond it is not begun */
 #define FAR_OFF          5.0 /* of the numerical error: beyond it the mesh is to blame, and is not asked */
 #define TABLE_INTERVALS  512
 #define SPACE_SHARE                                                                                \
@@ -222,7 +222,8 @@ static bool refine(accuracy *a, double space, double time) {
   if (finer == 1 && sharper == 1) sharper = 2;
   int cells = finer > 1 ? plan_rung(a->plan.cells * finer) : a->plan.cells;
   if (finer > 1 && cells == a->plan.cells) return false;
-  if (work * finer * sqrt(sqrt(sharper)) > MOST_WORK || work * wanted > HOPELESS * MOST_WORK)
+  if (work * finer * sqrt(sqrt(sharper)) > MOST_WORK ||
+      (a->last_cells > 0 && work * wanted > HOPELESS * MOST_WORK))
     return false;
   a->last_space = space;
   a->last_cells = a->plan.cells;
