@@ -7,17 +7,17 @@
 
 enum { MOST_FAULTS = 100 }; /* beyond it only counted */
 
-/* One fault: `at` a JSON Pointer, `is` what is wrong, `got` what stood there (NULL if nothing useful), `in` where it
-   came from when not the request itself ("recipe", "row 17"; NULL). */
+/* One fault: `at` a JSON Pointer, `is` what is wrong, `got` what stood there (NULL if nothing
+   useful), `in` where it came from when not the request itself ("recipe", "row 17"; NULL). */
 typedef struct request_fault {
   char *at, *is, *got, *in;
 } request_fault;
 
 typedef struct fault_list {
-  int count;    /* stored */
-  int found;    /* all */
+  int count; /* stored */
+  int found; /* all */
   request_fault items[MOST_FAULTS];
-  int status;   /* HTTP status of the whole: 400 if the body is not JSON, else 422; 0 while empty */
+  int status; /* HTTP status of the whole: 400 if the body is not JSON, else 422; 0 while empty */
   bool no_memory;
 } fault_list;
 

@@ -1,5 +1,5 @@
-/* library.h: the materials that come with the service, read once at start from data embedded at build. Immutable
-   afterwards and shared by all threads. */
+/* library.h: the materials that come with the service, read once at start from data embedded at
+   build. Immutable afterwards and shared by all threads. */
 #ifndef CORESOAK_LIBRARY_H
 #define CORESOAK_LIBRARY_H
 
@@ -8,7 +8,8 @@
 
 typedef struct library library;
 
-/* Reads all embedded files; NULL on a fault (a defect of the build; tests hold every file valid). */
+/* Reads all embedded files; NULL on a fault (a defect of the build; tests hold every file valid).
+ */
 library *library_open(fault_list *faults);
 void library_free(library *l);
 

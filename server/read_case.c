@@ -17,23 +17,25 @@ static const char *name_of(reader *r, const json_t *v) {
   return copy;
 }
 
-static void prepare_names(reader *r) {
-  heat_case *c = r->the_case;
-  const json_t *stages = json_object_get(r->root, "stages"),
-               *figures = json_object_get(r->root, "figures");
-  size_t n = json_array_size(stages), m = json_array_size(figures);
-  if (n <= LIMIT_STAGES && (c->stages.items = take(r, n, sizeof(stage)))) c->stages.count = (int)n;
-  if (m <= LIMIT_FIGURES && (c->figures.items = take(r, m, sizeof(figure))))
-    c->figures.count = (int)m;
-  for (int i = 0; i < c->stages.count; i++)
-    c->stages.items[i].name = name_of(r, json_array_get(stages, (size_t)i));
-  for (int i = 0; i < c->figures.count; i++) {
-    const json_t *v = json_array_get(figures, (size_t)i);
-    const char *kind = json_string_value(json_object_get(v, "kind"));
-    c->figures.items[i].name = name_of(r, v);
-    c->figures.items[i].kind = kind ? figure_kind_named(kind) : NULL;
-    c->figures.items[i].face = -1;
+static void prepare_stages(reader *r, const json_t *v) {
+  size_t count = json_array_size(v);
+  stage *items = count <= LIMIT_STAGES ? take(r, count, sizeof *items) : NULL;
+  for (size_t i = 0; items && i < count; i++) items[i].name = name_of(r, json_array_get(v, i));
+  r->the_case->stages.items = items;
+  r->the_case->stages.count = items ? (int)count : 0;
+}
+
+static void prepare_figures(reader *r, const json_t *v) {
+  size_t count = json_array_size(v);
+  figure *items = count <= LIMIT_FIGURES ? take(r, count, sizeof *items) : NULL;
+  for (size_t i = 0; items && i < count; i++) {
+    const char *kind = json_string_value(json_object_get(json_array_get(v, i), "kind"));
+    items[i].name = name_of(r, json_array_get(v, i));
+    items[i].kind = kind ? figure_kind_named(kind) : NULL;
+    items[i].face = -1;
   }
+  r->the_case->figures.items = items;
+  r->the_case->figures.count = items ? (int)count : 0;
 }
 
 /* ---- collisions ---- */
@@ -169,15 +171,18 @@ static void read_own_materials(reader *r, const json_t *v) {
   }
 }
 
-static void read_numerical_error(reader *r) {
-  const parameter *row = NULL;
-  for (int i = 0; i < case_type.count; i++)
-    if (!strcmp(case_type.parameters[i].name, "numerical_error")) row = &case_type.parameters[i];
-  const json_t *v = json_object_get(r->root, "numerical_error");
-  r->the_case->numerical_error = row->fallback;
-  size_t before = path_push(r, "numerical_error");
-  if (v) read_ranged(r, v, row, DIMENSION_DIFFERENCE, &r->the_case->numerical_error);
-  path_pop(r, before);
+/* Quantities that stand in the case itself. */
+static void read_own_quantities(reader *r) {
+  for (int i = 0; i < case_type.count; i++) {
+    const parameter *row = &case_type.parameters[i];
+    const json_t *v = json_object_get(r->root, row->name);
+    double *out = (double *)((char *)r->the_case + row->offset);
+    if (row->kind != VALUE_QUANTITY) continue;
+    size_t before = path_push(r, row->name);
+    *out = row->fallback;
+    if (v) read_ranged(r, v, row, row->dimension, out);
+    path_pop(r, before);
+  }
 }
 
 static void read_members(reader *r) {
@@ -188,7 +193,8 @@ static void read_members(reader *r) {
                case_type.parameters[i].about);
   r->the_case->part.shape = shapes[0];
   r->the_case->part.material = -1;
-  prepare_names(r);
+  prepare_stages(r, json_object_get(r->root, "stages"));
+  prepare_figures(r, json_object_get(r->root, "figures"));
   read_case_member(r, "logs", read_logs);
   read_case_member(r, "series", read_named_series);
   if (json_object_get(r->root, "part"))
@@ -203,32 +209,32 @@ static void read_members(reader *r) {
   read_case_member(r, "figures", read_figures);
   read_case_member(r, "stages", read_stages);
   read_case_member(r, "output", read_output);
-  read_numerical_error(r);
+  read_own_quantities(r);
+}
+
+/* Reads everything that the document tells of the case; true if there is no fault. */
+static bool read_whole(reader *r, const json_t *given) {
+  int faults = r->faults->found;
+  r->given = given;
+  r->root = expand_document(r, given);
+  if (!r->no_memory && r->expanded <= MOST_ELEMENTS) read_members(r);
+  if (!r->no_memory && r->expanded <= MOST_ELEMENTS) check_case(r);
+  return !r->no_memory && !r->faults->no_memory && r->faults->found == faults;
 }
 
 int read_solve(struct reader *r, void *json, document *d) {
-  arena memory;
-  arena_init(&memory, 0);
-  r->memory = &memory;
-  r->the_case = arena_take(&memory, sizeof(heat_case));
-  if (!r->the_case) r->no_memory = true;
-  int faults = r->faults->found;
-  r->given = json;
-  r->root = r->no_memory ? NULL : expand_document(r, json);
-  if (r->root && !r->no_memory && r->expanded <= MOST_ELEMENTS) {
-    read_members(r);
-    if (!r->no_memory) check_case(r);
-  }
-  bool good = r->root && !r->no_memory && !r->faults->no_memory && r->faults->found == faults &&
-              finish_case(r, d) == 0;
-  if (!good && r->faults->found == faults) r->faults->no_memory = true;
+  arena_init(&r->own_memory, 0);
+  r->memory = &r->own_memory;
+  r->the_case = take(r, 1, sizeof(heat_case));
+  bool good = r->the_case && read_whole(r, json);
+  if (good && finish_case(r, d)) good = !(r->no_memory = true);
   json_decref(r->root);
   r->root = NULL;
-  if (!good) {
-    arena_free(&memory);
-    return -1;
+  if (good) {
+    r->the_case->memory = r->own_memory;
+    d->question = r->the_case;
+  } else {
+    arena_free(&r->own_memory);
   }
-  r->the_case->memory = memory;
-  d->question = r->the_case;
-  return 0;
+  return good ? 0 : -1;
 }

@@ -107,7 +107,7 @@ static json_t *parse(scan *s) {
     json_decref(root);
     return NULL;
   }
-  if (root && json_is_object(root)) return root;
+  if (json_is_object(root)) return root;
   if (root)
     faults_add(s->faults, "", NULL, "must be an object");
   else

@@ -11,17 +11,37 @@ static dimension dimension_of_member(const char *member) {
   return DIMENSION_TEMPERATURE;
 }
 
-/* Notes in `uses` the first use of every {"series": NAME} below v, which stands at `member`. */
-static void note_uses(reader *r, const json_t *v, const char *member, json_t *uses) {
-  const char *name = json_is_object(v) ? json_string_value(json_object_get(v, "series")) : NULL;
+/* Notes in `uses` the first use of every {"series": NAME}, or other `form`, below v, which stands
+   at `member`. */
+static void note_uses(reader *r, const json_t *v, const char *form, const char *member,
+                      json_t *uses) {
+  const char *name = json_is_object(v) ? json_string_value(json_object_get(v, form)) : NULL;
   if (name && !json_object_get(uses, name) &&
       json_object_set_new(uses, name, json_integer(dimension_of_member(member))))
     r->no_memory = true;
   const char *key;
   json_t *value;
-  json_object_foreach((json_t *)v, key, value) note_uses(r, value, key, uses);
+  json_object_foreach((json_t *)v, key, value) note_uses(r, value, form, key, uses);
   for (size_t i = 0; i < json_array_size(v); i++)
-    if (json_is_object(json_array_get(v, i))) note_uses(r, json_array_get(v, i), member, uses);
+    if (json_is_object(json_array_get(v, i)))
+      note_uses(r, json_array_get(v, i), form, member, uses);
+}
+
+static json_t *uses_of(reader *r, const char *form) {
+  static const char *const members[] = {"part", "start", "stages"};
+  json_t *uses = json_object();
+  if (!uses) r->no_memory = true;
+  for (int i = 0; uses && i < COUNT_OF(members); i++)
+    note_uses(r, json_object_get(r->given, members[i]), form, members[i], uses);
+  return uses;
+}
+
+dimension dimension_of_log(reader *r, const char *name) {
+  json_t *uses = uses_of(r, "log");
+  const json_t *use = json_object_get(uses, name);
+  dimension d = use ? (dimension)json_integer_value(use) : DIMENSION_TEMPERATURE;
+  json_decref(uses);
+  return d;
 }
 
 /* Of a series that nothing uses: the first dimension that its values fit. */
@@ -72,12 +92,8 @@ void read_named_series(reader *r, const json_t *v) {
     fault_here(r, NULL, "has %zu series; the limit is %d", count, LIMIT_NAMED_SERIES);
     return;
   }
-  json_t *uses = json_object(), *value;
+  json_t *uses = uses_of(r, "series"), *value;
   const char *name;
-  if (!uses) r->no_memory = true;
-  note_uses(r, json_object_get(r->given, "part"), "part", uses);
-  note_uses(r, json_object_get(r->given, "start"), "start", uses);
-  note_uses(r, json_object_get(r->given, "stages"), "stages", uses);
   json_object_foreach((json_t *)v, name, value) {
     size_t before = path_push(r, name);
     read_one(r, name, value, uses);

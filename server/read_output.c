@@ -11,44 +11,83 @@ static int series_named(const heat_case *c, const char *name) {
   return -1;
 }
 
-/* "heat_flow:FACE", a named series, or a place; an object gives a place with "in". */
-static bool read_column(reader *r, const json_t *v, column *out) {
+/* ---- columns ---- */
+
+/* What stands in a list of columns: a text, or {"of": PLACE, "in": LAYER}. */
+typedef struct column_text {
+  const char *of;
+  const json_t *in;
+} column_text;
+
+static bool view_column(reader *r, const json_t *v, column_text *out) {
+  static const char *const members[] = {"of", "in", NULL};
   const json_t *of = json_is_object(v) ? json_object_get(v, "of") : v;
-  const json_t *in = json_is_object(v) ? json_object_get(v, "in") : NULL;
-  if (!json_is_string(of)) {
+  const char *name;
+  json_t *value;
+  bool good = json_is_string(of);
+  *out = (column_text){json_string_value(of), json_is_object(v) ? json_object_get(v, "in") : NULL};
+  if (!good)
     fault_here(
         r, v,
         "must be a place, \"heat_flow:FACE\", a named series, or {\"of\": PLACE, \"in\": LAYER}");
-    return false;
+  json_object_foreach((json_t *)v, name, value) {
+    if (!strcmp(name, members[0]) || !strcmp(name, members[1])) continue;
+    fault_at(r, name, NULL, "unknown member of a column (of, in)");
+    good = false;
   }
-  const char *text = json_string_value(of);
-  char name[2 * LIMIT_NAME + 8];
-  snprintf(name, sizeof name, "%s%s%s", text, in ? " in " : "",
-           in && json_is_string(in) ? json_string_value(in) : "");
-  if (!(out->name = arena_text(r->memory, name, strlen(name)))) r->no_memory = true;
-  if (!strncmp(text, "heat_flow:", 10)) {
-    json_t *face = json_string(text + 10);
-    out->kind = COLUMN_HEAT_FLOW;
-    out->index = face ? read_face_name(r, face) : -1;
-    json_decref(face);
-    return true;
-  }
-  out->index = series_named(r->the_case, text);
-  if (out->index < 0 && strchr(text, '/')) { /* a log's column */
-    series s;
-    if (!read_log_column(r, of, DIMENSION_TEMPERATURE, &s)) return false;
-    out->index = add_named_series(r, text, DIMENSION_TEMPERATURE, &s);
-    if (out->index < 0) return false;
-  }
-  if (out->index >= 0) {
+  return good && (json_is_string(of) ? must_be_text(r, of) : true);
+}
+
+static void name_column(reader *r, const column_text *t, column *out) {
+  char name[LIMIT_TEXT + LIMIT_NAME + 8];
+  const char *in = json_string_value(t->in);
+  snprintf(name, sizeof name, "%s%s%.64s", t->of, in ? " in " : "", in ? in : "");
+  out->name = arena_text(r->memory, name, strlen(name));
+  if (!out->name) r->no_memory = true;
+}
+
+static const char heat_flow[] = "heat_flow:";
+
+static void read_heat_flow(reader *r, const char *text, column *out) {
+  json_t *face = json_string(text + sizeof heat_flow - 1);
+  if (!face) r->no_memory = true;
+  out->kind = COLUMN_HEAT_FLOW;
+  out->index = face ? read_face_name(r, face) : -1;
+  json_decref(face);
+}
+
+/* The index of a named series or a log's column; -1 if the text is neither. */
+static int read_series_column(reader *r, const char *text) {
+  int known = series_named(r->the_case, text);
+  if (known >= 0 || !strchr(text, '/')) return known;
+  series s;
+  dimension d = dimension_of_log(r, text);
+  json_t *name = json_string(text);
+  if (!name) r->no_memory = true;
+  bool good = name && read_log_column(r, name, d, &s);
+  json_decref(name);
+  return good ? add_named_series(r, text, d, &s) : -1;
+}
+
+static void read_column(reader *r, const json_t *v, column *out) {
+  column_text t;
+  place twin;
+  if (!view_column(r, v, &t)) return;
+  name_column(r, &t, out);
+  if (!strncmp(t.of, heat_flow, sizeof heat_flow - 1)) {
+    read_heat_flow(r, t.of, out);
+  } else if ((out->index = read_series_column(r, t.of)) >= 0) {
     out->kind = COLUMN_SERIES;
-    return true;
+    if (read_place_name(r, t.of, NULL, &twin, true))
+      fault_here(r, v, "is the name of a place and of a series: rename one of them");
+  } else if (!strchr(t.of, '/')) {
+    out->kind = COLUMN_PLACE;
+    size_t before = json_is_object(v) ? path_push(r, "of") : r->length;
+    read_place_name(r, t.of, t.in, &out->place, false);
+    path_pop(r, before);
   }
-  out->kind = COLUMN_PLACE;
-  size_t before = json_is_object(v) ? path_push(r, "of") : r->length;
-  bool good = read_place_name(r, text, in, &out->place, false);
-  path_pop(r, before);
-  return good;
+  if (t.in && (out->kind == COLUMN_SERIES || out->kind == COLUMN_HEAT_FLOW))
+    fault_at(r, "in", t.in, "goes with coldest, hottest, mean and section_difference");
 }
 
 static void all_points(reader *r, columns *out) {

@@ -55,7 +55,7 @@ static char *rendered(const json_t *v) {
     text[length - 2] = 0;
     length -= 2;
   }
-  if (length > 80) strcpy(text + 77, "...");
+  if (length > 80) memcpy(text + 77, "...", 4);
   return text;
 }
 

@@ -194,6 +194,10 @@ static void read_stage(reader *r, const json_t *v, stage *g, bool last) {
   set_end(r, v, g, last);
 }
 
+static bool same_name(const stage *a, const stage *b) {
+  return a->name && b->name && *a->name && !strcmp(a->name, b->name);
+}
+
 void read_stages(reader *r, const json_t *v) {
   if (!must_be_array(r, v, LIMIT_STAGES, "stages")) return;
   heat_case *c = r->the_case;
@@ -203,7 +207,7 @@ void read_stages(reader *r, const json_t *v) {
     size_t before = path_push_index(r, i);
     read_stage(r, json_array_get(v, i), &c->stages.items[i], i + 1 == count);
     for (size_t k = 0; k < i; k++)
-      if (*c->stages.items[i].name && !strcmp(c->stages.items[i].name, c->stages.items[k].name))
+      if (same_name(&c->stages.items[i], &c->stages.items[k]))
         fault_at(r, "name", json_object_get(json_array_get(v, i), "name"),
                  "another stage has this name");
     path_pop(r, before);

@@ -197,9 +197,9 @@ static bool fire(reader *r, const json_t *v, dimension d, series *out) {
 /* Zones as a table: a jump at each border, or a straight change over `blend` around it. */
 static bool zones_to_table(reader *r, const line_form *f, series *out) {
   int zones = f->zones.count;
-  size_t rows = (size_t)(2 * zones);
+  size_t rows = (size_t)zones * 2;
   double *x = take(r, rows, sizeof(double)), *y = take(r, rows, sizeof(double)), at = 0;
-  if (!x || !y) return false;
+  if (!x || !y || !f->zones.items) return false;
   int n = 0;
   x[n] = 0;
   y[n++] = f->zones.items[0].value;

@@ -17,7 +17,8 @@ typedef struct reader {
   fault_list *faults;
   const library *library;
   document *document;  /* receives warnings */
-  arena *memory;       /* of the case */
+  arena *memory;       /* of the case or library that is read */
+  arena own_memory;    /* of a case, until it is finished */
   heat_case *the_case; /* being filled */
   json_t *root;        /* the finished document: inputs and named series put in place */
   const json_t *given; /* the document as it came */
@@ -101,6 +102,7 @@ void read_until(reader *r, const json_t *v, until *out);
 void read_figures(reader *r, const json_t *v);
 void read_output(reader *r, const json_t *v);
 void read_named_series(reader *r, const json_t *v);
+dimension dimension_of_log(reader *r, const char *name); /* by the first use of {"log": name} */
 int add_named_series(reader *r, const char *name, dimension d,
                      const series *s); /* index, -1 after a fault */
 

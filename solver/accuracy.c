@@ -42,7 +42,10 @@ status attempt_new(attempt **out, const heat_case *c, const march_plan *plan,
                    const property *properties, int keep_every, const observer *reference,
                    fault *f) {
   attempt *t = calloc(1, sizeof *t);
-  if (!t) return fail(f, STATUS_NO_MEMORY, "", "out of memory");
+  if (!t) {
+    fail(f, STATUS_NO_MEMORY, "", "out of memory");
+    return STATUS_NO_MEMORY;
+  }
   arena_init(&t->memory, 0);
   mesh_plan mesh = {.cells = plan->cells,
                     .keep_every = keep_every,

@@ -13,7 +13,8 @@ typedef struct arena {
 /* An empty arena; takes no memory yet. */
 void arena_init(arena *a, size_t limit);
 
-/* Makes sure that `bytes` more can be taken without asking the system. Returns 0, or -1 out of memory. */
+/* Makes sure that `bytes` more can be taken without asking the system. Returns 0, or -1 out of
+ * memory. */
 MUST_USE int arena_reserve(arena *a, size_t bytes);
 
 /* `bytes` zeroed bytes, aligned to 64; NULL when memory or the limit is exhausted. */

@@ -1,5 +1,5 @@
-/* case.h: what is asked. One part taken through one schedule, finished: every default filled in, every unit
-   gone, every name resolved. SI and kelvin. All memory belongs to the case's arena. */
+/* case.h: what is asked. One part taken through one schedule, finished: every default filled in,
+   every unit gone, every name resolved. SI and kelvin. All memory belongs to the case's arena. */
 #ifndef CORESOAK_CASE_H
 #define CORESOAK_CASE_H
 
@@ -27,17 +27,23 @@ typedef struct layer {
 
 typedef struct part {
   const shape *shape;
-  double sizes[MOST_SIZES];    /* in the order of the shape's row, m; NAN where not given */
-  int material;                /* of a part without layers; the reader makes one layer of it */
-  series *heat_generation;     /* likewise */
-  LIST(layer) layers;          /* from front or bore outwards; at least one after reading */
+  double sizes[MOST_SIZES]; /* in the order of the shape's row, m; NAN where not given */
+  int material;             /* of a part without layers; the reader makes one layer of it */
+  series *heat_generation;  /* likewise */
+  LIST(layer) layers;       /* from front or bore outwards; at least one after reading */
 } part;
 
 /* ---- places ---- */
 
 typedef enum place_kind {
-  PLACE_POINT, PLACE_FACE, PLACE_COLDEST, PLACE_HOTTEST, PLACE_MEAN, PLACE_SECTION_DIFFERENCE,
-  PLACE_CENTER, PLACE_MID_WALL
+  PLACE_POINT,
+  PLACE_FACE,
+  PLACE_COLDEST,
+  PLACE_HOTTEST,
+  PLACE_MEAN,
+  PLACE_SECTION_DIFFERENCE,
+  PLACE_CENTER,
+  PLACE_MID_WALL
 } place_kind;
 
 typedef struct place {
@@ -67,7 +73,7 @@ typedef struct point {
 
 /* A time from the start of the case, or the end of a stage (just before a jump). */
 typedef struct instant {
-  double time;       /* s; used if end_of_stage < 0 */
+  double time; /* s; used if end_of_stage < 0 */
   int end_of_stage;
 } instant;
 
@@ -80,7 +86,7 @@ typedef struct stage_set {
 /* ---- schedule ---- */
 
 typedef struct faces {
-  int count;                           /* faces of the shape */
+  int count; /* faces of the shape */
   face_condition condition[MOST_FACES];
 } faces;
 
@@ -90,10 +96,16 @@ typedef struct start {
   start_kind kind;    /* PER_LAYER: every layer has its own (or the only stage is steady) */
   double temperature; /* START_UNIFORM, K */
   table profile;      /* START_PROFILE: depth from front or bore (m) -> K */
-  faces faces;        /* START_STEADY: conditions of the steady state, series at their value at t = 0 */
+  faces faces; /* START_STEADY: conditions of the steady state, series at their value at t = 0 */
 } start;
 
-typedef enum until_kind { UNTIL_RISES_TO, UNTIL_FALLS_TO, UNTIL_WITHIN, UNTIL_ALL, UNTIL_ANY } until_kind;
+typedef enum until_kind {
+  UNTIL_RISES_TO,
+  UNTIL_FALLS_TO,
+  UNTIL_WITHIN,
+  UNTIL_ALL,
+  UNTIL_ANY
+} until_kind;
 
 /* One node of a condition; groups list their children by index into until.nodes. */
 typedef struct condition_node {
@@ -126,7 +138,7 @@ typedef struct stage {
 
 typedef struct requirement {
   double at_least, at_most; /* in the figure's unit, SI and kelvin; NAN if absent */
-  int which;                /* stress only: index of the component (stress_part_named); 0 if not named */
+  int which; /* stress only: index of the component (stress_part_named); 0 if not named */
 } requirement;
 
 enum figure_count { COUNT_TOTAL, COUNT_LONGEST };
@@ -154,7 +166,7 @@ typedef struct figure {
   double datum;              /* maturity, K */
   curve elastic_modulus, expansion; /* stress: Pa, 1/K against temperature */
   double poisson;
-  location *at;              /* stress; NULL: largest over the section */
+  location *at; /* stress; NULL: largest over the section */
 } figure;
 
 /* ---- what is to be told ---- */
@@ -176,10 +188,10 @@ typedef struct columns {
 } columns;
 
 typedef struct output_request {
-  output_times times;     /* set by the reader from `every` and `at` */
-  double every;           /* s */
+  output_times times; /* set by the reader from `every` and `at` */
+  double every;       /* s */
   LIST(instant) at;
-  columns of;             /* history only; default: all points */
+  columns of; /* history only; default: all points */
 } output_request;
 
 typedef struct output {
@@ -198,8 +210,8 @@ typedef struct log_facts {
   const char *name;
   double first, last, widest_gap, gap_at; /* s from the start of the case */
   int rows;
-  bool dated;       /* RFC 3339 times */
-  bool has_offset;  /* started_at given, or the first row is time 0 */
+  bool dated;      /* RFC 3339 times */
+  bool has_offset; /* started_at given, or the first row is time 0 */
 } log_facts;
 
 typedef struct heat_case {
@@ -216,11 +228,13 @@ typedef struct heat_case {
   arena memory;
 } heat_case;
 
-/* Members of every object of a case, for the reader and the schema (case.c). `part` has those of its shape
-   (shape.h) and these; a figure those of its kind (figure.h) and these. */
-extern const char *const material_trait_names[]; /* in the order of the bits of enum material_traits */
-extern const object_type valid_range_type, part_type, layer_type, material_type, latent_heat_type, stage_type, until_type, point_type,
-    figure_type, requirement_type, output_type, history_type, fields_type, start_type, case_type;
+/* Members of every object of a case, for the reader and the schema (case.c). `part` has those of
+   its shape (shape.h) and these; a figure those of its kind (figure.h) and these. */
+extern const char
+    *const material_trait_names[]; /* in the order of the bits of enum material_traits */
+extern const object_type valid_range_type, part_type, layer_type, material_type, latent_heat_type,
+    stage_type, until_type, point_type, figure_type, requirement_type, output_type, history_type,
+    fields_type, start_type, case_type;
 
 /* The forms of one node of an `until` and of a start, before names are resolved. */
 typedef struct until_form {

@@ -54,41 +54,41 @@ const char *dimension_unit(dimension d);
 
 /* What a member holds, and the C type at its offset. */
 typedef enum value_kind {
-  VALUE_QUANTITY,    /* double, in SI and kelvin */
-  VALUE_COUNT_OF,    /* int: a whole number */
-  VALUE_FLAG,        /* bool */
-  VALUE_TEXT,        /* const char * */
-  VALUE_NAME,        /* const char *: a unique name made of letters, digits, _ and - */
-  VALUE_CHOICE,      /* int: index into `of`, a NULL-terminated const char *const [] */
-  VALUE_CHOICES,     /* unsigned: a list of names out of `of`, a bit for each */
-  VALUE_OBJECT,      /* struct in place, described by `of`, an object_type; its own defaults if absent */
-  VALUE_OPTIONAL,    /* pointer to a struct described by `of`; NULL if absent */
-  VALUE_LIST,        /* LIST(struct) described by `of` */
-  VALUE_MATERIAL,    /* int: index into heat_case.materials; a name in JSON */
-  VALUE_SERIES,      /* struct series (series.h) */
+  VALUE_QUANTITY, /* double, in SI and kelvin */
+  VALUE_COUNT_OF, /* int: a whole number */
+  VALUE_FLAG,     /* bool */
+  VALUE_TEXT,     /* const char * */
+  VALUE_NAME,     /* const char *: a unique name made of letters, digits, _ and - */
+  VALUE_CHOICE,   /* int: index into `of`, a NULL-terminated const char *const [] */
+  VALUE_CHOICES,  /* unsigned: a list of names out of `of`, a bit for each */
+  VALUE_OBJECT, /* struct in place, described by `of`, an object_type; its own defaults if absent */
+  VALUE_OPTIONAL,        /* pointer to a struct described by `of`; NULL if absent */
+  VALUE_LIST,            /* LIST(struct) described by `of` */
+  VALUE_MATERIAL,        /* int: index into heat_case.materials; a name in JSON */
+  VALUE_SERIES,          /* struct series (series.h) */
   VALUE_OPTIONAL_SERIES, /* struct series *, NULL if absent */
-  VALUE_COEFFICIENT, /* struct coefficient (face.h) */
-  VALUE_CONTACT,     /* double, m2.K/W: a resistance, or {"conductance": ...} in W/(m2.K) */
-  VALUE_CURVE,       /* struct curve (property.h): a number, {"table": ...} or {"pieces": ...} */
-  VALUE_TABLE,       /* struct table (series.h): [[x, y], ...]; x in `dimension`, y in `second` */
-  VALUE_TARGET,      /* struct target (case.h): a PLACE ("of", with an "in" beside it) or a figure */
-  VALUE_LEVEL,       /* double in the dimension of the target named beside it (rises_to, require ...) */
-  VALUE_LOCATION,    /* struct location (case.h): "center", {"face", "depth"}, coordinates */
-  VALUE_INSTANT,     /* struct instant * (case.h): a time or "end:STAGE"; NULL if absent */
-  VALUE_INSTANTS,    /* LIST(instant) */
-  VALUE_STAGE_SET,   /* struct stage_set (case.h): a stage's name or a list of them */
-  VALUE_FACE,        /* int: index of a face of the shape; -1 for "all" or absent */
-  VALUE_FACES,       /* struct faces (case.h): face name -> condition, "all" */
-  VALUE_START,       /* struct start (case.h) */
-  VALUE_UNTIL,       /* struct until (case.h) */
-  VALUE_PLACES,      /* struct columns (case.h): what a history or the fields hold */
+  VALUE_COEFFICIENT,     /* struct coefficient (face.h) */
+  VALUE_CONTACT,         /* double, m2.K/W: a resistance, or {"conductance": ...} in W/(m2.K) */
+  VALUE_CURVE,  /* struct curve (property.h): a number, {"table": ...} or {"pieces": ...} */
+  VALUE_TABLE,  /* struct table (series.h): [[x, y], ...]; x in `dimension`, y in `second` */
+  VALUE_TARGET, /* struct target (case.h): a PLACE ("of", with an "in" beside it) or a figure */
+  VALUE_LEVEL,  /* double in the dimension of the target named beside it (rises_to, require ...) */
+  VALUE_LOCATION,         /* struct location (case.h): "center", {"face", "depth"}, coordinates */
+  VALUE_INSTANT,          /* struct instant * (case.h): a time or "end:STAGE"; NULL if absent */
+  VALUE_INSTANTS,         /* LIST(instant) */
+  VALUE_STAGE_SET,        /* struct stage_set (case.h): a stage's name or a list of them */
+  VALUE_FACE,             /* int: index of a face of the shape; -1 for "all" or absent */
+  VALUE_FACES,            /* struct faces (case.h): face name -> condition, "all" */
+  VALUE_START,            /* struct start (case.h) */
+  VALUE_UNTIL,            /* struct until (case.h) */
+  VALUE_PLACES,           /* struct columns (case.h): what a history or the fields hold */
   VALUE_OPTIONAL_LOCATION /* struct location * (case.h), NULL if absent */
 } value_kind;
 
 enum parameter_flags {
   PARAMETER_REQUIRED = 1,
-  PARAMETER_ABOVE = 2, /* must be greater than `least`, not equal */
-  PARAMETER_BELOW = 4, /* must be less than `most`, not equal */
+  PARAMETER_ABOVE = 2,  /* must be greater than `least`, not equal */
+  PARAMETER_BELOW = 4,  /* must be less than `most`, not equal */
   PARAMETER_PLANNED = 8 /* read by a later version: refused today by name */
 };
 
@@ -98,22 +98,22 @@ typedef struct parameter {
   const char *name;
   value_kind kind;
   dimension dimension;
-  dimension second;    /* of the y column of a VALUE_TABLE */
-  size_t offset;       /* in the struct that the object fills */
+  dimension second; /* of the y column of a VALUE_TABLE */
+  size_t offset;    /* in the struct that the object fills */
   unsigned flags;
-  double least, most;  /* range in SI; -INFINITY, INFINITY for none */
-  double fallback;     /* value of a quantity that is absent, in SI; NAN leaves it unset */
-  const void *of;      /* choices or object_type, by kind */
-  const char *about;   /* one line, a full sentence without its full stop */
+  double least, most; /* range in SI; -INFINITY, INFINITY for none */
+  double fallback;    /* value of a quantity that is absent, in SI; NAN leaves it unset */
+  const void *of;     /* choices or object_type, by kind */
+  const char *about;  /* one line, a full sentence without its full stop */
 } parameter;
 
 struct object_type {
-  const char *name;  /* "layer", "stage", ... */
+  const char *name; /* "layer", "stage", ... */
   const char *about;
-  size_t size;       /* of the C struct */
+  size_t size; /* of the C struct */
   const parameter *parameters;
   int count;
-  bool one_of;       /* a union by key: exactly one member */
+  bool one_of; /* a union by key: exactly one member */
 };
 
 /* A list as the reader fills it: items live in the case's arena. */

@@ -41,8 +41,8 @@ enum material_traits {
 /* A material as the solver knows it; texts are for the record. */
 typedef struct material {
   const char *name, *title, *source, *revision, *note; /* note: NULL if none */
-  curve conductivity;       /* W/(m.K) */
-  curve density;            /* kg/m3 */
+  curve conductivity;                                  /* W/(m.K) */
+  curve density;                                       /* kg/m3 */
   curve specific_heat;      /* J/(kg.K); of an enthalpy table: its slopes */
   LIST(latent_heat) latent; /* of an enthalpy table: its jumps */
   double valid_from,

@@ -275,8 +275,11 @@ status solve_case(const heat_case *c, const solve_control *control, heat_result 
   heat_result *r = NULL;
   *out = NULL;
   status bad = accuracy_run(&a, c, control, f);
-  if (!bad && !(r = calloc(1, sizeof *r))) bad = fail(f, STATUS_NO_MEMORY, "", "out of memory");
-  if (!bad) bad = answer(&a, r, f);
+  if (!bad && !(r = calloc(1, sizeof *r))) {
+    fail(f, STATUS_NO_MEMORY, "", "out of memory");
+    bad = STATUS_NO_MEMORY;
+  }
+  if (r) bad = answer(&a, r, f);
   accuracy_free(&a);
   if (bad)
     heat_result_free(r);

@@ -24,14 +24,15 @@ typedef enum status {
 /* The short message of a status; never NULL. */
 const char *status_message(status s);
 
-/* Where and why something failed. `at` is a JSON Pointer into the case, "" for the case as a whole. */
+/* Where and why something failed. `at` is a JSON Pointer into the case, "" for the case as a whole.
+ */
 typedef struct fault {
   status status;
   char at[128];
   char is[256];
-  int stage;              /* index of the stage that was running, -1 if none */
-  double time;            /* s from the start of the case, NAN if none */
-  double could_be_met;    /* K, with STATUS_ERROR_NOT_MET: the smallest estimate reached; else NAN */
+  int stage;           /* index of the stage that was running, -1 if none */
+  double time;         /* s from the start of the case, NAN if none */
+  double could_be_met; /* K, with STATUS_ERROR_NOT_MET: the smallest estimate reached; else NAN */
 } fault;
 
 /* Fills *f (which may be NULL) with a printf-formatted reason and returns `s`, so that a failing

@@ -73,9 +73,11 @@ static int factor(stepper *s, double gamma_h) {
   return tridiagonal_factor(&s->matrix, s->lower, s->diagonal, s->upper);
 }
 
-/* out = base + sum of weight_j U_j over j < count, in one pass; count is a constant where this is expanded. */
-static inline __attribute__((always_inline)) void sum_of(const stepper *s, double *restrict out, const double *base,
-                                                         const double *weight, const int count) {
+/* out = base + sum of weight_j U_j over j < count, in one pass; count is a constant where this is
+ * expanded. */
+static inline __attribute__((always_inline)) void sum_of(const stepper *s, double *restrict out,
+                                                         const double *base, const double *weight,
+                                                         const int count) {
   const double *u[RODAS_STAGES];
   double w[RODAS_STAGES];
   for (int j = 0; j < count; j++) {
@@ -89,7 +91,8 @@ static inline __attribute__((always_inline)) void sum_of(const stepper *s, doubl
   }
 }
 
-static void combine(const stepper *s, double *out, const double *base, const double *weight, int count) {
+static void combine(const stepper *s, double *out, const double *base, const double *weight,
+                    int count) {
   switch (count) {
   case 0: sum_of(s, out, base, weight, 0); return;
   case 1: sum_of(s, out, base, weight, 1); return;
