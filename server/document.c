@@ -35,51 +35,73 @@ static void read_labels(reader *r, const json_t *v) {
   path_pop(r, before);
 }
 
-static void read_instant_of_day(reader *r, const json_t *v, double *out) {
+/* ---- job ---- */
+
+static void read_priority(reader *r, const json_t *v, job_wishes *job) {
+  if (json_is_integer(v) && json_integer_value(v) >= -1000 && json_integer_value(v) <= 1000)
+    job->priority = (int)json_integer_value(v);
+  else
+    fault_here(r, v, "must be a whole number from -1000 to 1000");
+}
+
+static void read_moment(reader *r, const json_t *v, double *out) {
   if (!json_is_string(v) || !read_rfc3339(json_string_value(v), out))
     fault_here(r, v,
                "must be a moment as RFC 3339 with an offset, such as 2026-03-01T06:15:00+01:00");
 }
 
-static void read_job_member(reader *r, const char *name, const json_t *v, job_wishes *job) {
-  if (!strcmp(name, "priority")) {
-    if (json_is_integer(v) && json_integer_value(v) >= -1000 && json_integer_value(v) <= 1000)
-      job->priority = (int)json_integer_value(v);
-    else
-      fault_here(r, v, "must be a whole number from -1000 to 1000");
-  } else if (!strcmp(name, "not_before")) {
-    read_instant_of_day(r, v, &job->not_before);
-  } else if (!strcmp(name, "expires_at")) {
-    read_instant_of_day(r, v, &job->expires_at);
-  } else if (!strcmp(name, "time_limit")) {
-    if (read_quantity(r, v, DIMENSION_TIME, &job->time_limit) && !(job->time_limit > 0))
-      fault_here(r, v, "must be greater than 0");
-  } else if (!strcmp(name, "id")) {
-    if (!must_be_text(r, v)) return;
-    if (!is_name(json_string_value(v)))
-      fault_here(r, v, "a name has 1 to 64 letters, digits, _ or -");
-    job->id = arena_text(&r->document->memory, json_string_value(v), json_string_length(v));
-    if (!job->id) r->no_memory = true;
-  } else {
-    static const char *const names[] = {"priority",   "not_before", "expires_at",
-                                        "time_limit", "id",         NULL};
-    const char *near = nearest_name(name, names);
-    fault_here(r, NULL, "unknown member of job%s%s%s", near ? "; did you mean \"" : "",
-               near ? near : "", near ? "\"?" : "");
+static void read_not_before(reader *r, const json_t *v, job_wishes *job) {
+  read_moment(r, v, &job->not_before);
+}
+
+static void read_expires_at(reader *r, const json_t *v, job_wishes *job) {
+  read_moment(r, v, &job->expires_at);
+}
+
+static void read_time_limit(reader *r, const json_t *v, job_wishes *job) {
+  if (read_quantity(r, v, DIMENSION_TIME, &job->time_limit) && !(job->time_limit > 0))
+    fault_here(r, v, "must be greater than 0");
+}
+
+static void read_id(reader *r, const json_t *v, job_wishes *job) {
+  if (!must_be_text(r, v)) return;
+  if (!is_name(json_string_value(v)))
+    fault_here(r, v, "a name has 1 to 64 letters, digits, _ or -");
+  job->id = arena_text(&r->document->memory, json_string_value(v), json_string_length(v));
+  if (!job->id) r->no_memory = true;
+}
+
+static const char *const job_members[] = {"priority",   "not_before", "expires_at",
+                                          "time_limit", "id",         NULL};
+static void (*const job_readers[])(reader *r, const json_t *v, job_wishes *job) = {
+    read_priority, read_not_before, read_expires_at, read_time_limit, read_id};
+
+static void read_job_member(reader *r, const char *name, const json_t *v) {
+  for (int i = 0; job_members[i]; i++) {
+    if (strcmp(job_members[i], name)) continue;
+    job_readers[i](r, v, &r->document->job);
+    return;
   }
+  const char *near = nearest_name(name, job_members);
+  fault_here(r, NULL, "unknown member of job%s%s%s", near ? "; did you mean \"" : "",
+             near ? near : "", near ? "\"?" : "");
 }
 
 static void read_job(reader *r, const json_t *v) {
   const char *name;
   json_t *value;
   size_t before = path_push(r, "job");
-  if (must_be_object(r, v)) json_object_foreach((json_t *)v, name, value) {
+  if (must_be_object(r, v)) {
+    json_object_foreach((json_t *)v, name, value) {
       size_t inner = path_push(r, name);
-      read_job_member(r, name, value, &r->document->job);
+      read_job_member(r, name, value);
       path_pop(r, inner);
     }
+  }
   path_pop(r, before);
 }
+
+/* ---- kind, labels, title ---- */
 
 static void unknown_kind(reader *r, const json_t *v) {
   const char *names[8];

@@ -90,36 +90,39 @@ static void read_condition(reader *r, const json_t *v, face_condition *out) {
   }
 }
 
+/* The condition that stands under one name: for a face, for all, or only for its faults. */
+static void read_named_condition(reader *r, const char *name, const json_t *v, faces *out,
+                                 face_condition *all, bool named[MOST_FACES]) {
+  face_condition unused;
+  if (!strcmp(name, "all")) {
+    read_condition(r, v, all);
+    return;
+  }
+  json_t *text = json_string(name);
+  int face = text ? read_face_name(r, text) : -1;
+  if (!text) r->no_memory = true;
+  json_decref(text);
+  read_condition(r, v, face >= 0 ? &out->condition[face] : &unused);
+  if (face >= 0) named[face] = true;
+}
+
 void read_faces(reader *r, const json_t *v, faces *out) {
-  const shape *s = r->the_case->part.shape;
-  bool solid = s->power && r->the_case->part.layers.count && !s->hollow(&r->the_case->part),
-       named[MOST_FACES] = {false};
+  const part *p = &r->the_case->part;
+  bool solid = p->shape->power && p->layers.count && !p->shape->hollow(p);
+  bool named[MOST_FACES] = {false};
   face_condition all = {.kind = FACE_INSULATED, .assumed = true};
   memset(out, 0, sizeof *out);
-  while (s->faces[out->count]) out->count++;
-  for (int i = 0; i < out->count; i++) out->condition[i] = all;
-  if (!v) return;
-  if (!must_be_object(r, v)) return;
+  while (p->shape->faces[out->count]) out->count++;
   const char *name;
   json_t *value;
-  json_object_foreach((json_t *)v, name, value) {
-    size_t before = path_push(r, name);
-    json_t *text = json_string(name);
-    int face = strcmp(name, "all") && text ? read_face_name(r, text) : -1;
-    if (!text) r->no_memory = true;
-    json_decref(text);
-    if (!strcmp(name, "all"))
-      read_condition(r, value, &all);
-    else if (face >= 0) {
-      read_condition(r, value, &out->condition[face]);
-      named[face] = true;
-    } else {
-      face_condition unused; /* for its faults */
-      read_condition(r, value, &unused);
+  if (v && must_be_object(r, v)) {
+    json_object_foreach((json_t *)v, name, value) {
+      size_t before = path_push(r, name);
+      read_named_condition(r, name, value, out, &all, named);
+      path_pop(r, before);
     }
-    path_pop(r, before);
   }
   for (int i = 0; i < out->count; i++)
-    if (!named[i] && !(solid && i == 0)) out->condition[i] = all;
+    if (!named[i]) out->condition[i] = all;
   if (solid) out->condition[0] = (face_condition){.kind = FACE_INSULATED};
 }

@@ -6,47 +6,55 @@
 
 /* ---- enthalpy tables ---- */
 
-/* Slopes between rows are the specific heat, jumps are latent heats at one temperature. */
-static bool read_enthalpy(reader *r, const json_t *v, material *m) {
-  const json_t *rows = json_is_object(v) ? json_object_get(v, "table") : NULL;
+/* The step from row i to the next: a slope is specific heat, a jump a latent heat at one
+   temperature. */
+static bool enthalpy_step(reader *r, const table *t, int i, material *m, piece *pieces) {
+  double rise = t->y[i + 1] - t->y[i], wide = t->x[i + 1] - t->x[i];
+  if (!(rise > 0)) {
+    fault_here(r, NULL, "enthalpy must rise with temperature");
+    return false;
+  }
+  if (wide > 0) {
+    pieces[m->specific_heat.count++] =
+        (piece){.from = t->x[i], .to = t->x[i + 1], .poly = {rise / wide}};
+    return true;
+  }
+  if (m->latent.count == LIMIT_LATENT_HEATS) {
+    fault_here(r, NULL, "has too many jumps; the limit is %d", LIMIT_LATENT_HEATS);
+    return false;
+  }
+  m->latent.items[m->latent.count++] = (latent_heat){.heat = rise, .from = t->x[i], .to = t->x[i]};
+  return true;
+}
+
+static void enthalpy_steps(reader *r, const table *t, material *m) {
+  piece *pieces = take(r, (size_t)t->count, sizeof *pieces);
+  m->latent.items = take(r, LIMIT_LATENT_HEATS, sizeof(latent_heat));
+  m->specific_heat = (curve){.count = 0, .pieces = pieces};
+  bool good = pieces && m->latent.items;
+  for (int i = 0; good && i + 1 < t->count; i++) {
+    size_t before = path_push_index(r, (size_t)i + 1);
+    good = enthalpy_step(r, t, i, m, pieces);
+    path_pop(r, before);
+  }
+}
+
+static void read_enthalpy(reader *r, const json_t *v, material *m) {
   table t;
-  if (!rows || json_object_size(v) != 1u + (json_object_get(v, "units") != NULL)) {
+  size_t members = json_object_get(v, "units") ? 2 : 1;
+  if (!json_object_get(v, "table") || json_object_size(v) != members) {
     fault_here(r, v, "must be {\"table\": [[T, enthalpy], ...]}");
-    return false;
+    return;
   }
-  bool good = read_table_of(r, v, "table", DIMENSION_TEMPERATURE, DIMENSION_ENTHALPY, &t);
+  if (!read_table_of(r, v, "table", DIMENSION_TEMPERATURE, DIMENSION_ENTHALPY, &t)) return;
   size_t before = path_push(r, "table");
-  if (good && t.count < 2) {
+  if (t.count < 2)
     fault_here(r, NULL, "must have at least two rows");
-    good = false;
-  }
-  piece *p = good ? take(r, (size_t)t.count, sizeof *p) : NULL;
-  m->latent.items = good ? take(r, LIMIT_LATENT_HEATS, sizeof(latent_heat)) : NULL;
-  int n = 0;
-  for (int i = 0; p && m->latent.items && i + 1 < t.count && good; i++) {
-    double rise = t.y[i + 1] - t.y[i];
-    size_t inner = path_push_index(r, (size_t)i + 1);
-    if (!(rise > 0)) {
-      fault_here(r, json_array_get(rows, (size_t)i + 1), "enthalpy must rise with temperature");
-      good = false;
-    } else if (t.x[i] == t.x[i + 1] && m->latent.count == LIMIT_LATENT_HEATS) {
-      fault_here(r, NULL, "has too many jumps; the limit is %d", LIMIT_LATENT_HEATS);
-      good = false;
-    } else if (t.x[i] == t.x[i + 1]) {
-      m->latent.items[m->latent.count++] =
-          (latent_heat){.heat = rise, .from = t.x[i], .to = t.x[i]};
-    } else {
-      p[n++] = (piece){.from = t.x[i], .to = t.x[i + 1], .poly = {rise / (t.x[i + 1] - t.x[i])}};
-    }
-    path_pop(r, inner);
-  }
-  path_pop(r, before);
-  if (good && n > LIMIT_PIECES) {
+  else if (t.count > LIMIT_PIECES)
     fault_here(r, NULL, "has %d rows; the limit is %d", t.count, LIMIT_PIECES);
-    return false;
-  }
-  m->specific_heat = (curve){.count = n, .pieces = p};
-  return good && n > 0;
+  else
+    enthalpy_steps(r, &t, m);
+  path_pop(r, before);
 }
 
 /* ---- materials ---- */

@@ -32,6 +32,35 @@ static bool read_row(reader *r, const json_t *row, const column_units *units, co
   return good;
 }
 
+/* Row i against those before it: rising, or (not strict) level once, which is a jump. */
+static bool in_order(reader *r, const double *x, size_t i, bool strict, const json_t *row) {
+  bool falls = i > 0 && (strict ? x[i] <= x[i - 1] : x[i] < x[i - 1]);
+  bool third = i > 1 && x[i] == x[i - 2];
+  if (falls)
+    fault_here(r, row,
+               strict ? "rows must rise in their first column"
+                      : "rows must not fall in their first column");
+  else if (third)
+    fault_here(r, row, "a jump is two rows at one place, not three");
+  return !falls && !third;
+}
+
+static bool fill_rows(reader *r, const json_t *v, const column_units *units, const dimension d[2],
+                      bool strict, double *x, double *y) {
+  bool good = true;
+  for (size_t i = 0; i < json_array_size(v); i++) {
+    const json_t *row = json_array_get(v, i);
+    double value[2];
+    size_t before = path_push_index(r, i);
+    bool fine = read_row(r, row, units, d, value);
+    x[i] = fine ? value[0] : i ? x[i - 1] : -INFINITY;
+    y[i] = fine ? value[1] : 0;
+    good = fine && in_order(r, x, i, strict, row) && good;
+    path_pop(r, before);
+  }
+  return good;
+}
+
 static bool read_rows(reader *r, const json_t *v, const column_units *units, const dimension d[2],
                       bool strict, table *out) {
   if (!must_be_array(r, v, LIMIT_TABLE_ROWS, "rows")) return false;
@@ -40,26 +69,10 @@ static bool read_rows(reader *r, const json_t *v, const column_units *units, con
     fault_here(r, NULL, "must have at least one row");
     return false;
   }
-  double *x = take(r, count, sizeof(double)), *y = take(r, count, sizeof(double)), value[2];
+  double *x = take(r, count, sizeof(double)), *y = take(r, count, sizeof(double));
   if (!x || !y) return false;
-  bool good = true;
-  for (size_t i = 0; i < count; i++) {
-    size_t before = path_push_index(r, i);
-    bool fine = read_row(r, json_array_get(v, i), units, d, value);
-    x[i] = fine ? value[0] : i ? x[i - 1] : -INFINITY;
-    y[i] = fine ? value[1] : 0;
-    bool falls = i && (strict ? x[i] <= x[i - 1] : x[i] < x[i - 1]);
-    if (fine && falls)
-      fault_here(r, json_array_get(v, i),
-                 strict ? "rows must rise in their first column"
-                        : "rows must not fall in their first column");
-    if (fine && i > 1 && x[i] == x[i - 2])
-      fault_here(r, json_array_get(v, i), "a jump is two rows at one place, not three");
-    good = good && fine && !falls && !(i > 1 && x[i] == x[i - 2]);
-    path_pop(r, before);
-  }
   *out = (table){.count = (int)count, .x = x, .y = y};
-  return good;
+  return fill_rows(r, v, units, d, strict, x, y);
 }
 
 bool read_table(reader *r, const json_t *v, dimension x, dimension y, bool strict, table *out) {
