@@ -327,9 +327,9 @@ static inline const double *row_in(const property *p, int s, double enthalpy, do
                                    double *inverse, double *beyond) {
   const property_segment *segment = &p->segment[s];
   double x = (enthalpy - segment->start) * segment->inverse;
-  int i = (int)x;
-  i = i < 0 ? 0 : i;
-  i = i > segment->count - 1 ? segment->count - 1 : i;
+  int last = segment->count - 1;
+  int i =
+      x > 0 ? x < last ? (int)x : last : 0; /* a wild trial state, even NAN, stays in the table */
   double part = x - i, kept = part < 0 ? 0 : part > 1 ? 1 : part;
   *inverse = segment->inverse;
   *beyond = part == kept ? 0 : (part - kept) / segment->inverse;
