@@ -1,92 +1,139 @@
-/* read_expand.c: the finished document: inputs and named series put where they are used, materials
-   expanded; its canonical text and hash. */
+/* read_expand.c: the finished document: inputs and named series put where they are used. */
 #include "reader.h"
 
-#include <nettle/sha2.h>
-#include <stdio.h>
-#include <stdlib.h>
 #include <string.h>
 
-/* {"input": NAME} or {"series": NAME}: the name, and which of the two. */
-static const char *reference(const json_t *v, const char **group) {
-  static const char *const groups[][2] = {{"input", "inputs"}, {"series", "series"}};
-  if (!json_is_object(v) || json_object_size(v) != 1) return NULL;
-  for (int i = 0; i < 2; i++) {
-    const char *name = json_string_value(json_object_get(v, groups[i][0]));
-    *group = groups[i][1];
-    if (name) return name;
-  }
-  return NULL;
+/* The document that is expanded. A named series is expanded once and then shared. */
+typedef struct expansion {
+  reader *r;
+  const json_t *given;
+  json_t *series; /* those expanded so far */
+  json_t *sizes;  /* their elements; a name stands here from when its expansion begins */
+} expansion;
+
+static json_t *expand(expansion *e, const json_t *v);
+
+/* Counts elements of the finished document; true if there are too many. */
+static bool count(expansion *e, size_t elements) {
+  size_t left = MOST_ELEMENTS + 1 - e->r->expanded;
+  e->r->expanded += elements < left ? elements : left;
+  return e->r->expanded > MOST_ELEMENTS;
 }
 
-static json_t *expand(reader *r, const json_t *v, const json_t *root, int depth);
+/* ---- references ---- */
 
-static json_t *expand_reference(reader *r, const json_t *root, const char *name, const char *group,
-                                int depth) {
-  const json_t *found = json_object_get(json_object_get(root, group), name);
-  if (found && depth < MOST_DEPTH) return expand(r, found, root, depth + 1);
+static json_t *unknown_reference(expansion *e, const char *name, const char *group) {
   const char *names[LIMIT_NAMED_SERIES + 1], *key;
   json_t *value;
   int n = 0;
-  json_object_foreach(json_object_get((json_t *)root, group), key,
-                      value) if (n < LIMIT_NAMED_SERIES) names[n++] = key;
+  json_object_foreach(json_object_get((json_t *)e->given, group), key, value) {
+    if (n < LIMIT_NAMED_SERIES) names[n++] = key;
+  }
   names[n] = NULL;
   const char *near = nearest_name(name, names);
-  if (found)
-    fault_here(r, NULL, "\"%s\" refers to itself", name);
-  else
-    fault_here(r, NULL, "there is no \"%s\" in `%s`%s%s%s", name, group,
-               near ? "; did you mean \"" : "", near ? near : "", near ? "\"?" : "");
+  fault_here(e->r, NULL, "there is no \"%s\" in `%s`%s%s%s", name, group,
+             near ? "; did you mean \"" : "", near ? near : "", near ? "\"?" : "");
   return json_null();
 }
 
-/* Series within series could multiply without end. */
-static bool too_much(reader *r) {
-  return ++r->expanded > MOST_ELEMENTS;
+static json_t *expand_series(expansion *e, const char *name, const json_t *found) {
+  size_t before = e->r->expanded;
+  if (json_object_set_new(e->sizes, name, json_integer(0))) e->r->no_memory = true;
+  json_t *value = expand(e, found);
+  json_t *size = json_integer((json_int_t)(e->r->expanded - before));
+  if (json_object_set_new(e->sizes, name, size) || json_object_set(e->series, name, value))
+    e->r->no_memory = true;
+  return value;
 }
 
-static json_t *expand_object(reader *r, const json_t *v, const json_t *root, int depth) {
-  json_t *copy = json_object(), *inner;
+static json_t *series_reference(expansion *e, const char *name) {
+  const json_t *found = json_object_get(json_object_get(e->given, "series"), name);
+  json_t *known = json_object_get(e->series, name);
+  if (!found) return unknown_reference(e, name, "series");
+  if (!known && !json_object_get(e->sizes, name)) return expand_series(e, name, found);
+  if (!known || json_is_null(known)) {
+    fault_here(e->r, NULL, known ? "\"%s\" has no value of its own" : "\"%s\" refers to itself",
+               name);
+    return json_null();
+  }
+  count(e, (size_t)json_integer_value(json_object_get(e->sizes, name)));
+  return json_incref(known);
+}
+
+static json_t *input_reference(expansion *e, const char *name) {
+  json_t *found = json_object_get(json_object_get(e->given, "inputs"), name);
+  return found ? json_incref(found) : unknown_reference(e, name, "inputs");
+}
+
+/* The name in {"input": NAME} or {"series": NAME}; NULL if v is something else. */
+static const char *referred(const json_t *v, const char *form) {
+  return json_object_size(v) == 1 ? json_string_value(json_object_get(v, form)) : NULL;
+}
+
+/* ---- everything else ---- */
+
+static json_t *expand_object(expansion *e, const json_t *v) {
+  json_t *copy = json_object(), *value;
   const char *key;
-  json_t *value;
   json_object_foreach((json_t *)v, key, value) {
-    size_t before = path_push(r, key);
-    inner = expand(r, value, root, depth + 1);
-    if (json_object_set_new(copy, key, inner)) r->no_memory = true;
-    path_pop(r, before);
+    size_t before = path_push(e->r, key);
+    if (json_object_set_new(copy, key, expand(e, value))) e->r->no_memory = true;
+    path_pop(e->r, before);
   }
   return copy;
 }
 
-static json_t *expand_array(reader *r, const json_t *v, const json_t *root, int depth) {
+static json_t *expand_array(expansion *e, const json_t *v) {
   json_t *copy = json_array();
   for (size_t i = 0; i < json_array_size(v); i++) {
-    const json_t *item = json_array_get(v, i);
-    if (!json_is_object(item) && !json_is_array(item) &&
-        !too_much(r)) { /* numbers of long tables are shared */
-      if (json_array_append(copy, (json_t *)item)) r->no_memory = true;
-      continue;
-    }
-    size_t before = path_push_index(r, i);
-    json_t *inner = expand(r, item, root, depth + 1);
-    if (json_array_append_new(copy, inner)) r->no_memory = true;
-    path_pop(r, before);
+    size_t before = path_push_index(e->r, i);
+    if (json_array_append_new(copy, expand(e, json_array_get(v, i)))) e->r->no_memory = true;
+    path_pop(e->r, before);
   }
   return copy;
 }
 
-static json_t *expand(reader *r, const json_t *v, const json_t *root, int depth) {
-  const char *group, *name = reference(v, &group);
-  if (depth > 2 * MOST_DEPTH || too_much(r)) return json_null();
-  if (name) return expand_reference(r, root, name, group, depth);
-  if (json_is_object(v)) return expand_object(r, v, root, depth);
-  if (json_is_array(v)) return expand_array(r, v, root, depth);
+/* Rows of numbers are most of a large document: they are shared, not copied. */
+static bool holds_containers(const json_t *v) {
+  for (size_t i = 0; i < json_array_size(v); i++)
+    if (json_is_object(json_array_get(v, i)) || json_is_array(json_array_get(v, i))) return true;
+  return false;
+}
+
+/* A new reference; null where a reference leads nowhere or the document grows too large. */
+static json_t *expand(expansion *e, const json_t *v) {
+  const char *input = referred(v, "input"), *series = referred(v, "series");
+  if (count(e, 1)) return json_null();
+  if (input) return input_reference(e, input);
+  if (series) return series_reference(e, series);
+  if (json_is_object(v)) return expand_object(e, v);
+  if (json_is_array(v) && holds_containers(v)) return expand_array(e, v);
+  count(e, json_array_size(v));
   return json_incref((json_t *)v);
 }
 
-/* An object whose keys are names of the caller's: one called "input" is no reference. */
-static json_t *expand_each(reader *r, const json_t *v, const json_t *root) {
-  return json_is_object(v) ? expand_object(r, v, root, 1) : json_incref((json_t *)v);
+/* ---- the document ---- */
+
+/* Members whose keys are the caller's own names: one called "input" is no reference. */
+static json_t *expand_named(expansion *e, const json_t *v) {
+  bool is_series = v == json_object_get(e->given, "series");
+  json_t *copy = json_object(), *value;
+  const char *key;
+  json_object_foreach((json_t *)v, key, value) {
+    size_t before = path_push(e->r, key);
+    json_t *inner = is_series ? series_reference(e, key) : expand(e, value);
+    if (json_object_set_new(copy, key, inner)) e->r->no_memory = true;
+    path_pop(e->r, before);
+  }
+  return copy;
+}
+
+static json_t *expand_member(expansion *e, const char *key, json_t *v) {
+  static const char *const untouched[] = {"logs", "labels", "inputs", "title", NULL};
+  bool named = !strcmp(key, "series") || !strcmp(key, "materials");
+  for (int i = 0; untouched[i]; i++)
+    if (!strcmp(untouched[i], key)) return json_incref(v);
+  return named && json_is_object(v) ? expand_named(e, v) : expand(e, v);
 }
 
 static void check_inputs(reader *r, const json_t *v) {
@@ -106,67 +153,19 @@ static void check_inputs(reader *r, const json_t *v) {
 }
 
 json_t *expand_document(reader *r, const json_t *given) {
-  json_t *copy = json_object();
+  expansion e = {.r = r, .given = given, .series = json_object(), .sizes = json_object()};
+  json_t *copy = json_object(), *value;
   const char *key;
-  json_t *value;
   check_inputs(r, json_object_get(given, "inputs"));
   json_object_foreach((json_t *)given, key, value) {
-    bool as_it_is = !strcmp(key, "logs") || !strcmp(key, "labels") || !strcmp(key, "inputs") ||
-                    !strcmp(key, "title");
     size_t before = path_push(r, key);
-    bool own_names = !strcmp(key, "series") || !strcmp(key, "materials");
-    json_t *inner = as_it_is    ? json_incref(value)
-                    : own_names ? expand_each(r, value, given)
-                                : expand(r, value, given, 1);
-    if (json_object_set_new(copy, key, inner)) r->no_memory = true;
+    if (json_object_set_new(copy, key, expand_member(&e, key, value))) r->no_memory = true;
     path_pop(r, before);
   }
   if (r->expanded > MOST_ELEMENTS)
     fault_here(r, NULL, "has more than %d elements once its series are put in place",
                MOST_ELEMENTS);
+  json_decref(e.series);
+  json_decref(e.sizes);
   return copy;
-}
-
-/* ---- the finished case ---- */
-
-/* The library's own text of each material that is used. */
-static int put_materials(reader *r, json_t *finished) {
-  json_t *materials = json_object();
-  const heat_case *c = r->the_case;
-  for (int i = 0; i < c->materials.count; i++) {
-    const char *name = c->materials.items[i].name;
-    json_t *own = json_object_get(json_object_get(r->root, "materials"), name);
-    const char *text = own ? NULL : library_text(r->library, name);
-    json_t *value = own ? json_incref(own) : text ? json_loads(text, 0, NULL) : NULL;
-    if (!value || json_object_set_new(materials, name, value)) {
-      json_decref(materials);
-      return -1;
-    }
-  }
-  return json_object_set_new(finished, "materials", materials);
-}
-
-static void hash_text(document *d) {
-  uint8_t digest[SHA256_DIGEST_SIZE];
-  struct sha256_ctx sha;
-  sha256_init(&sha);
-  sha256_update(&sha, d->finished_length, (const uint8_t *)d->finished);
-  sha256_digest(&sha, sizeof digest, digest);
-  for (int i = 0; i < SHA256_DIGEST_SIZE; i++) snprintf(d->hash + 2 * i, 3, "%02x", digest[i]);
-}
-
-int finish_case(reader *r, document *d) {
-  static const char *const outside[] = {"title", "labels", "inputs", "kind", "job", NULL};
-  json_t *finished = json_copy(r->root);
-  for (int i = 0; finished && outside[i]; i++) json_object_del(finished, outside[i]);
-  char *text = NULL;
-  if (finished && !put_materials(r, finished))
-    text = json_dumps(finished, JSON_SORT_KEYS | JSON_COMPACT);
-  json_decref(finished);
-  d->finished = text ? arena_text(&d->memory, text, strlen(text)) : NULL;
-  d->finished_length = text ? strlen(text) : 0;
-  free(text);
-  if (!d->finished) return -1;
-  hash_text(d);
-  return 0;
 }

@@ -48,7 +48,7 @@ static size_t utf8_length(const unsigned char *p, size_t left) {
 }
 
 static int count_element(scan *s) {
-  return ++s->elements > MOST_ELEMENTS ? refuse(s, 422, "more than 2000000 elements") : 0;
+  return ++s->elements > MOST_ELEMENTS ? refuse(s, 422, "more than 1000000 elements") : 0;
 }
 
 /* The text that begins at the quote where the scan stands; leaves it behind the closing quote. */

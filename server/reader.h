@@ -9,7 +9,7 @@
 
 #include <jansson.h>
 
-enum { LONGEST_PATH = 512, MOST_DEPTH = 32, MOST_ELEMENTS = 2000000, LONGEST_TEXT = 1 << 16 };
+enum { LONGEST_PATH = 512, MOST_DEPTH = 32, MOST_ELEMENTS = 1000000, LONGEST_TEXT = 1 << 16 };
 
 /* The reading of one document. Every function that can meet a fault adds it at the current path and
  * goes on. */

@@ -3,6 +3,7 @@
 #include "document.h"
 #include "figure.h"
 #include "kind.h"
+#include "mutate.h"
 #include "shape.h"
 
 #include <math.h>
