@@ -14,9 +14,9 @@
 
 enum { LEVELS = 3, RULES = 5, MOST_REFERENCE_CELLS = 3900 };
 
-/* Nodes x steps of a reference: with up to 50 cases a second or two each, else some fifteen. */
+/* Nodes x steps of a reference: with up to 50 cases a second or two each, else some four. */
 static double most_work = 1.2e7;
-#define WORK_OF_LONG_RUNS 1.5e8
+#define WORK_OF_LONG_RUNS 4e7
 
 static const double errors[LEVELS] = {0.5, 0.1, 0.02};
 static const double most_refused[LEVELS] = {0.02, 0.05, 0.15}; /* share */
