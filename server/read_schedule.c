@@ -212,7 +212,7 @@ void read_stages(reader *r, const json_t *v) {
                  "another stage has this name");
     path_pop(r, before);
   }
-  bool only_steady = count == 1 && c->stages.items[0].end == STAGE_STEADY;
+  bool only_steady = count == 1 && c->stages.items && c->stages.items[0].end == STAGE_STEADY;
   if (json_object_get(r->root, "start") || only_steady || layers_start(c) || !c->part.layers.count)
     return;
   size_t length = r->length;
