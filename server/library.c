@@ -28,7 +28,10 @@ library *library_open(fault_list *faults) {
   int count = 0;
   while (embedded_materials[count].name) count++;
   library *l = calloc(1, sizeof *l);
-  if (!l) return NULL;
+  if (!l) {
+    faults->no_memory = true;
+    return NULL;
+  }
   arena_init(&l->memory, 0);
   l->items = arena_array(&l->memory, (size_t)count + 1, sizeof *l->items);
   l->names = arena_array(&l->memory, (size_t)count + 1, sizeof *l->names);
@@ -39,7 +42,8 @@ library *library_open(fault_list *faults) {
     l->names[i] = l->items[i].name;
     l->count++;
   }
-  if (good && !r.no_memory) return l;
+  if (r.no_memory || !l->items || !l->names) faults->no_memory = true;
+  if (good && !faults->no_memory) return l;
   library_free(l);
   return NULL;
 }

@@ -86,12 +86,15 @@ static void check_collisions(reader *r) {
 
 /* ---- rules of the whole ---- */
 
-static bool exchanges(const faces *f) {
-  for (int i = 0; i < f->count; i++)
-    if (f->condition[i].kind == FACE_PRESCRIBED || f->condition[i].has_convection ||
-        f->condition[i].has_radiation)
-      return true;
-  return false;
+static bool is_zero(const series *s) {
+  return s->kind == SERIES_CONSTANT && s->value == 0;
+}
+
+/* Whether a face ties the part to some temperature. */
+static bool exchanges(const face_condition *c) {
+  bool convects = c->has_convection && (c->h.by_surface_temperature || !is_zero(&c->h.over_time));
+  bool radiates = c->has_radiation && c->emissivity * c->view_factor > 0;
+  return c->kind == FACE_PRESCRIBED || convects || radiates;
 }
 
 static double net_heat(const heat_case *c, const faces *f) {
@@ -117,7 +120,8 @@ static double net_heat(const heat_case *c, const faces *f) {
 }
 
 static void check_steady(reader *r, const faces *f, const char *at, bool is_start) {
-  if (exchanges(f)) return;
+  for (int i = 0; i < f->count; i++)
+    if (exchanges(&f->condition[i])) return;
   bool no_start = is_start || (r->the_case->start.kind == START_PER_LAYER &&
                                !json_object_get(r->root, "start"));
   if (net_heat(r->the_case, f) != 0)

@@ -125,6 +125,28 @@ Test(document_memory, of_named_series_and_nested_conditions) {
   fail_each(0);
 }
 
+/* Thousands: every 89th of them fails. */
+Test(document_memory, of_the_library) {
+  enum { STEP = 89 };
+  bool opened = false;
+  for (int nth = 0; !opened && nth < MOST_ALLOCATIONS; nth += STEP) {
+    fault_list faults;
+    int before = allocations_out;
+    faults_init(&faults);
+    allocations = 0;
+    fail_at = nth;
+    library *l = library_open(&faults);
+    opened = allocations <= nth;
+    fail_at = -1;
+    cr_assert_eq(l != NULL, opened, "allocation %d failed", nth);
+    cr_assert(opened || faults.no_memory, "allocation %d failed and no reason is told", nth);
+    library_free(l);
+    faults_free(&faults);
+    cr_assert_eq(allocations_out, before, "allocation %d failed: blocks are lost", nth);
+  }
+  cr_assert(opened);
+}
+
 Test(document_memory, of_many_faults) {
   load("invalid/every_fault_at_once");
   fail_each(-1);
